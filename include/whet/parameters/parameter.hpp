@@ -23,7 +23,7 @@ struct Parameter {
   double upper{std::numeric_limits<double>::infinity()};
   /// A change of the parameter over which the model bends, in `unit`; 0: not given.
   double scale{0.0};
-  /// How tables and figures print it; empty: as its name. May be LaTeX.
+  /// How figures and typeset tables print it; empty: as its name. May be LaTeX.
   std::string label{};
   /// The unit of fiducial, lower, upper and scale; empty: none.
   std::string unit{};
