@@ -5,22 +5,16 @@
 #include <memory>
 #include <random>
 
+#include <doctest/doctest.h>
 #include <Eigen/Cholesky>
 #include <Eigen/Eigenvalues>
 #include <Eigen/LU>
-#include <doctest/doctest.h>
-
-#include <whet/covariances/covariance.hpp>
-#include <whet/covariances/diagonal_covariance.hpp>
 
 #include <support/close_to.hpp>
 
 using whet::CovarianceError;
 using whet::DenseCovariance;
 using whet::test::close_to;
-
-static_assert(whet::Covariance<DenseCovariance>);
-static_assert(whet::Covariance<whet::DiagonalCovariance>);
 
 namespace {
 
@@ -67,7 +61,8 @@ TEST_CASE("Variances from 1e-24 to 1e24 in one matrix whiten like those of one u
   const Eigen::Index n = 9;
   const Eigen::MatrixXd plain = neighbours(n, 0.8, 0.0), rows = normal(engine, n, 3);
   Eigen::VectorXd units(n);
-  for (Eigen::Index i = 0; i < n; ++i) units(i) = std::pow(10.0, -12.0 + 3.0 * static_cast<double>(i));
+  for (Eigen::Index i = 0; i < n; ++i)
+    units(i) = std::pow(10.0, -12.0 + 3.0 * static_cast<double>(i));
   const DenseCovariance scaled(units.asDiagonal() * plain * units.asDiagonal());
   const Eigen::MatrixXd white = DenseCovariance(plain).whiten(rows);
   CHECK((scaled.whiten(units.asDiagonal() * rows) - white).norm() <= 1e-13 * white.norm());

@@ -90,9 +90,8 @@ TEST_CASE("A standard deviation that is not finite and positive is refused by na
 }
 
 TEST_CASE("No data are refused") {
-  CHECK_THROWS_WITH_AS(
-      (void)DiagonalCovariance::from_standard_deviations(std::vector<double>{}),
-      doctest::Contains("number of data: got 0"), CovarianceError);
+  CHECK_THROWS_WITH_AS((void)DiagonalCovariance::from_standard_deviations(std::vector<double>{}),
+                       doctest::Contains("number of data: got 0"), CovarianceError);
   CHECK_THROWS_WITH_AS((void)DiagonalCovariance::uniform(-1, 1.0),
                        doctest::Contains("number of data: got 0"), CovarianceError);
 }

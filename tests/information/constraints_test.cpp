@@ -13,9 +13,7 @@ using whet::test::Draws;
 
 namespace {
 
-Eigen::MatrixXd root_of(const Eigen::MatrixXd& rows) {
-  return whet::detail::root_of<double>(rows);
-}
+Eigen::MatrixXd root_of(const Eigen::MatrixXd& rows) { return whet::detail::root_of<double>(rows); }
 
 }  // namespace
 

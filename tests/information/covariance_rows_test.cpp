@@ -3,8 +3,8 @@
 #include <cmath>
 #include <limits>
 
-#include <Eigen/LU>
 #include <doctest/doctest.h>
+#include <Eigen/LU>
 
 #include <support/close_to.hpp>
 

@@ -4,8 +4,8 @@
 #include <string>
 #include <vector>
 
-#include <boost/multiprecision/cpp_bin_float.hpp>
 #include <doctest/doctest.h>
+#include <boost/multiprecision/cpp_bin_float.hpp>
 
 #include <whet/forecasts/forecast.hpp>
 #include <whet/information/information.hpp>
@@ -25,7 +25,8 @@ using whet::test::named;
 TEST_CASE("A prior adds 1 / sigma^2 to the information on its parameter") {
   const Information one = Information::from_matrix({{"h", 0.7}}, Eigen::MatrixXd{{3.0}});
   // By hand: 1 / sqrt(3 + 16).
-  CHECK(Forecast(one + GaussianPrior("h", 0.25)).sigma("h") == close_to(1.0 / std::sqrt(19.0), 1e-14));
+  CHECK(Forecast(one + GaussianPrior("h", 0.25)).sigma("h") ==
+        close_to(1.0 / std::sqrt(19.0), 1e-14));
 }
 
 TEST_CASE("A correlated prior adds the inverse of its covariance, names in any order") {
@@ -39,12 +40,13 @@ TEST_CASE("A correlated prior adds the inverse of its covariance, names in any o
 }
 
 TEST_CASE("A strongly correlated prior states what rounding leaves of it") {
-  using Wide = boost::multiprecision::number<
-      boost::multiprecision::cpp_bin_float_50::backend_type, boost::multiprecision::et_off>;
+  using Wide = boost::multiprecision::number<boost::multiprecision::cpp_bin_float_50::backend_type,
+                                             boost::multiprecision::et_off>;
   for (const double apart : {1e-3, 1e-6, 1e-9, 1e-12}) {
     const Eigen::Matrix2d covariance{{1.0, 0.3 * (1.0 - apart)}, {0.3 * (1.0 - apart), 0.09}};
     const Eigen::MatrixXd rows{{0.4, 2.0}, {-0.2, 0.9}};
-    const Forecast forecast(information_of(named(2), rows) + GaussianPrior({"p0", "p1"}, covariance));
+    const Forecast forecast(information_of(named(2), rows) +
+                            GaussianPrior({"p0", "p1"}, covariance));
     // At fifty digits, of the same doubles.
     const Wide a(covariance(0, 0)), b(covariance(0, 1)), c(covariance(1, 1));
     const Wide determinant = a * c - b * b;
@@ -77,7 +79,8 @@ TEST_CASE("An infinitely weak prior is none, and a very sharp one holds its para
 TEST_CASE("A prior that is none is refused with the reason") {
   for (const double sigma : {0.0, -1.0, std::nan(""), HUGE_VAL}) {
     CHECK_THROWS_WITH_AS(GaussianPrior("h", sigma),
-                         doctest::Contains("standard deviation of parameter \"h\""), ParameterError);
+                         doctest::Contains("standard deviation of parameter \"h\""),
+                         ParameterError);
   }
   const Eigen::Matrix2d identity = Eigen::Matrix2d::Identity();
   CHECK_THROWS_WITH_AS(GaussianPrior({"a"}, identity),

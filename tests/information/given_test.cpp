@@ -4,9 +4,9 @@
 #include <string>
 #include <vector>
 
+#include <doctest/doctest.h>
 #include <Eigen/Eigenvalues>
 #include <Eigen/LU>
-#include <doctest/doctest.h>
 
 #include <whet/forecasts/forecast.hpp>
 
@@ -115,7 +115,8 @@ TEST_CASE("No sigma of a printed covariance is further off than stated, joined o
     const LongMatrix exact = draw(draws, count, draws.decades(0.0, 6.0));
     const Parameters parameters = named(count);
     const Eigen::MatrixXd given = printed(exact, digits);
-    Information information = Information::from_matrix(parameters, Eigen::MatrixXd::Identity(count, count));
+    Information information =
+        Information::from_matrix(parameters, Eigen::MatrixXd::Identity(count, count));
     try {
       information = Information::from_covariance(parameters, given, {.digits = digits});
     } catch (const CovarianceError&) {
@@ -123,13 +124,13 @@ TEST_CASE("No sigma of a printed covariance is further off than stated, joined o
       continue;
     }
     // Another probe, known well, that measures a combination of the parameters.
-    const Eigen::MatrixXd row = draws.normal(1, count) *
-                                given.diagonal().cwiseSqrt().cwiseInverse().asDiagonal() * 3.0;
+    const Eigen::MatrixXd row =
+        draws.normal(1, count) * given.diagonal().cwiseSqrt().cwiseInverse().asDiagonal() * 3.0;
     const Information probe = whet::test::information_of(parameters, row);
     const LongMatrix long_row = row.cast<long double>();
     const Eigen::VectorXd alone = exact.diagonal().cwiseSqrt().cast<double>();
-    const Eigen::VectorXd joined = true_sigmas_of_matrix(with_null_known(
-        information + probe, inverse(exact) + long_row.transpose() * long_row));
+    const Eigen::VectorXd joined = true_sigmas_of_matrix(
+        with_null_known(information + probe, inverse(exact) + long_row.transpose() * long_row));
     const Forecast forecast(information), joint(information + probe);
     (void)forecast.notes();
     for (Eigen::Index a = 0; a < count; ++a) {
@@ -204,9 +205,11 @@ TEST_CASE("A matrix that is no information is refused with the reason") {
   refused(Eigen::Matrix2d{{1.0, 2.0}, {2.0, 1.0}}, "a negative eigenvalue beyond its digits");
   refused(Eigen::Matrix2d{{1.0, 1.02}, {1.02, 1.0}}, "negative eigenvalue", 3);
   refused(Eigen::MatrixXd::Identity(3, 3), "got 3 x 3, expected 2 x 2");
-  refused(Eigen::Matrix2d{{1.0, 0.5}, {0.4, 1.0}}, "element (\"a\", \"b\") and its mirror: got 0.5 and 0.4");
+  refused(Eigen::Matrix2d{{1.0, 0.5}, {0.4, 1.0}},
+          "element (\"a\", \"b\") and its mirror: got 0.5 and 0.4");
   refused(Eigen::Matrix2d{{1.0, std::nan("")}, {0.4, 1.0}}, "got nan, expected a finite value");
-  refused(Eigen::Matrix2d{{-1.0, 0.0}, {0.0, 1.0}}, "element (\"a\", \"a\"): got -1, expected a value >= 0");
+  refused(Eigen::Matrix2d{{-1.0, 0.0}, {0.0, 1.0}},
+          "element (\"a\", \"a\"): got -1, expected a value >= 0");
   refused(Eigen::Matrix2d{{0.0, 0.5}, {0.5, 1.0}}, "no information of its own");
   refused(Eigen::Matrix2d::Identity(), "significant digits of the matrix: got -1", -1);
 }
@@ -219,7 +222,8 @@ TEST_CASE("A covariance that is none is refused with the reason") {
   };
   refused(Eigen::Matrix2d{{1.0, 1.0}, {1.0, 1.0}}, "positive definite");
   refused(Eigen::Matrix2d{{1.0, 2.0}, {2.0, 1.0}}, "positive definite");
-  refused(Eigen::Matrix2d{{1.0, 0.999}, {0.999, 1.0}}, "may be singular within the errors of its elements", 2);
+  refused(Eigen::Matrix2d{{1.0, 0.999}, {0.999, 1.0}},
+          "may be singular within the errors of its elements", 2);
   refused(Eigen::Matrix2d{{0.0, 0.0}, {0.0, 1.0}}, "variance of element 0");
   refused(Eigen::MatrixXd::Identity(1, 1), "got 1 x 1, expected 2 x 2");
 }

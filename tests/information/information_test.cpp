@@ -6,8 +6,8 @@
 #include <string>
 #include <vector>
 
-#include <Eigen/LU>
 #include <doctest/doctest.h>
+#include <Eigen/LU>
 
 #include <whet/forecasts/forecast.hpp>
 
@@ -143,8 +143,8 @@ TEST_CASE("Holding on both sides and joining is joining and holding") {
 
 TEST_CASE("A nuisance of one side may be integrated out before or after joining the other") {
   Draws draws(6);
-  const Information a = information_of({{"x", 1.0}, {"y", 1.0}, {"calibration", 0.0}},
-                                       rows_of(draws, 8, 3));
+  const Information a =
+      information_of({{"x", 1.0}, {"y", 1.0}, {"calibration", 0.0}}, rows_of(draws, 8, 3));
   const Information b = information_of({{"x", 1.0}, {"y", 1.0}}, rows_of(draws, 6, 2));
   check_close(sigmas_of(a.integrating_out({"calibration"}) + b),
               sigmas_of((a + b).integrating_out({"calibration"})), 1e-12);
@@ -152,11 +152,13 @@ TEST_CASE("A nuisance of one side may be integrated out before or after joining 
 
 TEST_CASE("k times the readings divide every sigma by sqrt(k), and its stated error") {
   Draws draws(7);
-  const Information a = information_of(named(3), rows_of(draws, 8, 3), Eigen::Vector3d::Constant(1e-5));
+  const Information a =
+      information_of(named(3), rows_of(draws, 8, 3), Eigen::Vector3d::Constant(1e-5));
   const Forecast one(a), seven(a.repeated(7.0));
   for (const std::string name : {"p0", "p1", "p2"}) {
     CHECK(seven.sigma(name) == close_to(one.sigma(name) / std::sqrt(7.0), 1e-14));
-    CHECK(seven.numerical_error(name) == close_to(one.numerical_error(name) / std::sqrt(7.0), 1e-9));
+    CHECK(seven.numerical_error(name) ==
+          close_to(one.numerical_error(name) / std::sqrt(7.0), 1e-9));
   }
 }
 
@@ -275,9 +277,11 @@ TEST_CASE("Joining other fiducial values, other units or the same experiment is 
   const Information b = Information::from_matrix({{.name = "h", .fiducial = 0.71}}, one);
   const Information c =
       Information::from_matrix({{.name = "h", .fiducial = 0.7, .unit = "km"}}, one);
-  CHECK_THROWS_WITH_AS((void)(a + b), doctest::Contains("fiducial value of parameter \"h\": got 0.7 and 0.71"),
+  CHECK_THROWS_WITH_AS((void)(a + b),
+                       doctest::Contains("fiducial value of parameter \"h\": got 0.7 and 0.71"),
                        ParameterError);
-  CHECK_THROWS_WITH_AS((void)(a + c), doctest::Contains("unit of parameter \"h\": got \"\" and \"km\""),
+  CHECK_THROWS_WITH_AS((void)(a + c),
+                       doctest::Contains("unit of parameter \"h\": got \"\" and \"km\""),
                        ParameterError);
   // A few units in the last place are one value.
   const double near = std::nextafter(std::nextafter(0.7, 1.0), 1.0);
@@ -285,8 +289,21 @@ TEST_CASE("Joining other fiducial values, other units or the same experiment is 
   const Information plover = experiment({{"h", 0.7}}, one, "Plover"),
                     avocet = experiment({{"h", 0.7}}, one, "Avocet");
   CHECK_THROWS_WITH_AS((void)(plover + avocet + plover),
-                       doctest::Contains("experiment \"Plover\" would count twice"), ParameterError);
+                       doctest::Contains("experiment \"Plover\" would count twice"),
+                       ParameterError);
   CHECK_NOTHROW((void)(a + a));  // unnamed ones are taken as distinct
+}
+
+TEST_CASE("A nuisance that is not measured above its error is noted when it is integrated out") {
+  const Eigen::MatrixXd rows{{1.0, 0.5e-3, 0.0}, {0.0, 0.0, 1.0}, {0.5, 0.0, 1.0}};
+  const auto notes = [&](const Eigen::VectorXd& sizes, const std::string& name) {
+    return information_of(named(3), rows, sizes).integrating_out({name}).notes();
+  };
+  const Eigen::Vector3d blurred(1e-9, 1e-3, 1e-9), sharp(1e-9, 1e-9, 1e-9);
+  REQUIRE(notes(blurred, "p1").size() == 1);
+  CHECK(notes(blurred, "p1")[0].find("integrating out p1: a direction among them") == 0);
+  CHECK(notes(sharp, "p1").empty());
+  CHECK(notes(blurred, "p2").empty());
 }
 
 TEST_CASE("Names that are not there, stand twice or were there before are refused") {
@@ -300,7 +317,8 @@ TEST_CASE("Names that are not there, stand twice or were there before are refuse
   refused([&] { return a.integrating_out({"a", "b", "c"}); }, "number of parameters: got 0");
   refused([&] { return a.integrating_out({"a"}).holding({"a"}); },
           "parameter \"a\" was integrated out before; left are b, c");
-  refused([&] { return a + GaussianPrior("d", 0.1); }, "joining a prior: parameter \"d\": not among a, b, c");
+  refused([&] { return a + GaussianPrior("d", 0.1); },
+          "joining a prior: parameter \"d\": not among a, b, c");
   refused([&] { return a.holding({"a"}) + GaussianPrior("a", 0.1); },
           "parameter \"a\" was held before; left are b, c");
 }

@@ -5,8 +5,8 @@
 #include <string>
 #include <vector>
 
-#include <Eigen/QR>
 #include <doctest/doctest.h>
+#include <Eigen/QR>
 
 #include <whet/assembly/expected_information.hpp>
 #include <whet/covariances/diagonal_covariance.hpp>
@@ -127,8 +127,8 @@ TEST_CASE("What is not measured is found, and what is keeps its sigma within the
       CHECK(std::abs(units(p) * forecast.sigma(name) - wanted) <=
             units(p) * forecast.numerical_error(name));
       CHECK(std::abs(plain.sigma(name) - wanted) <= plain.numerical_error(name));
-      CHECK(forecast.numerical_error(name) <= 20.0 * (error + 1e-13) * forecast.sigma(name) *
-                                                  static_cast<double>(count));
+      CHECK(forecast.numerical_error(name) <=
+            20.0 * (error + 1e-13) * forecast.sigma(name) * static_cast<double>(count));
     }
     // With one of the twins integrated out, the other is still unmeasured.
     const std::string twin = parameters[problem.twins[0]].name;
@@ -210,8 +210,8 @@ TEST_CASE("The least direction of a Kahan matrix is found, where its last pivot 
     kahan.row(i) *= std::pow(s, static_cast<double>(i));
   }
   const Eigen::VectorXd v = whet::detail::least_direction<double>(kahan).col(0);
-  const Eigen::MatrixXd inverse = kahan.triangularView<Eigen::Upper>().solve(
-      Eigen::MatrixXd::Identity(n, n));
+  const Eigen::MatrixXd inverse =
+      kahan.triangularView<Eigen::Upper>().solve(Eigen::MatrixXd::Identity(n, n));
   CHECK((kahan * v).norm() <= 2.0 / inverse.norm() * std::sqrt(static_cast<double>(n)));
   CHECK((kahan * v).norm() < 1e-3 * kahan(n - 1, n - 1));
 }
@@ -243,10 +243,8 @@ TEST_CASE("A column that holds nothing but independent noise is not measured, ho
     Eigen::MatrixXd values(n, 2);
     values << Eigen::VectorXd::LinSpaced(n, -1.0, 1.0), 1e-4 * draws.normal(n, 1);
     Eigen::MatrixXd noise = Eigen::MatrixXd::Constant(n, 2, 4e-4);
-    whet::Derivatives::Parts parts{.parameters = named(2),
-                                   .mean = Eigen::VectorXd::Zero(n),
-                                   .values = values,
-                                   .noise = noise};
+    whet::Derivatives::Parts parts{
+        .parameters = named(2), .mean = Eigen::VectorXd::Zero(n), .values = values, .noise = noise};
     parts.reports.resize(2);
     for (auto& report : parts.reports) report.independent_noise = true;
     const auto information = whet::expected_information(

@@ -80,8 +80,9 @@ class Draws {
   LongMatrix scaled = LongMatrix::Zero(std::max(rows.rows(), count), count);
   for (Eigen::Index p = 0; p < count; ++p) scaled.col(p).head(rows.rows()) = rows.col(p) / norms(p);
   const Eigen::HouseholderQR<LongMatrix> qr(scaled);
-  const LongMatrix half = qr.matrixQR().topRows(count).template triangularView<Eigen::Upper>().solve(
-      LongMatrix::Identity(count, count));
+  const LongMatrix half =
+      qr.matrixQR().topRows(count).template triangularView<Eigen::Upper>().solve(
+          LongMatrix::Identity(count, count));
   Eigen::VectorXd sigmas(count);
   for (Eigen::Index p = 0; p < count; ++p) {
     sigmas(p) = static_cast<double>(half.row(p).norm() / norms(p));

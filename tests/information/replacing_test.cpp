@@ -30,8 +30,9 @@ const auto to_a_and_b = whet::exact([](const auto& at) {
   using std::sqrt;
   return std::vector{sqrt(at["u"] * at["v"]), sqrt(at["u"] / at["v"])};
 });
-const auto to_u_and_v = whet::exact(
-    [](const auto& at) { return std::vector{at["a"] * at["b"], at["a"] / at["b"]}; });
+const auto to_u_and_v = whet::exact([](const auto& at) {
+  return std::vector{at["a"] * at["b"], at["a"] / at["b"]};
+});
 
 Information base() {
   return Information::from_matrix(
@@ -58,8 +59,7 @@ TEST_CASE("Numerical derivatives of the function state their error, and it holds
     return std::vector<double>{std::sqrt(at["u"] * at["v"]), std::sqrt(at["u"] / at["v"])};
   };
   const Forecast forecast(base().replacing({"a", "b"}, product_and_ratio, by_steps));
-  CHECK(std::abs(forecast.sigma("u") - 0.659896703392182) <=
-        forecast.numerical_error("u") + 1e-15);
+  CHECK(std::abs(forecast.sigma("u") - 0.659896703392182) <= forecast.numerical_error("u") + 1e-15);
   CHECK(std::abs(forecast.sigma("v") - 2.84433218241291) <= forecast.numerical_error("v") + 1e-14);
   CHECK(forecast.numerical_error("v") <= 1e-8 * forecast.sigma("v"));
 }
@@ -76,12 +76,13 @@ TEST_CASE("There and back again is where it was, and known again") {
 TEST_CASE("Two replacings in a row are one by their product") {
   Draws draws(1);
   const Information a = information_of({{"x", 3.0}, {"y", 0.5}}, draws.normal(7, 2));
-  const auto first = whet::exact([](const auto& at) { return std::vector{2.0 * at["s"] + at["t"]}; });
+  const auto first =
+      whet::exact([](const auto& at) { return std::vector{2.0 * at["s"] + at["t"]}; });
   const auto squares = whet::exact([](const auto& at) {
     return std::vector{at["p"] * at["p"], at["q"]};
   });
-  const auto both = whet::exact(
-      [](const auto& at) { return std::vector{2.0 * at["p"] * at["p"] + at["q"]}; });
+  const auto both =
+      whet::exact([](const auto& at) { return std::vector{2.0 * at["p"] * at["p"] + at["q"]}; });
   // One old parameter, two new ones: y stays, x = 2 s + t has a direction that moves nothing.
   CHECK_THROWS_AS((void)a.replacing({"x"}, {{"s", 1.0}, {"t", 1.0}}, first), ParameterError);
   const Information b = information_of({{"s", 1.0}, {"t", 1.0}, {"y", 0.5}}, draws.normal(9, 3));
@@ -89,10 +90,10 @@ TEST_CASE("Two replacings in a row are one by their product") {
       b.replacing({"s"}, {{"m", 2.0}},
                   whet::exact([](const auto& at) { return std::vector{0.5 * at["m"]}; }))
           .replacing({"m", "t"}, {{"p", std::sqrt(2.0)}, {"q", 1.0}}, squares);
-  const Information at_once = b.replacing(
-      {"s", "t"}, {{"p", std::sqrt(2.0)}, {"q", 1.0}}, whet::exact([](const auto& at) {
-        return std::vector{0.5 * at["p"] * at["p"], at["q"]};
-      }));
+  const Information at_once =
+      b.replacing({"s", "t"}, {{"p", std::sqrt(2.0)}, {"q", 1.0}}, whet::exact([](const auto& at) {
+                    return std::vector{0.5 * at["p"] * at["p"], at["q"]};
+                  }));
   CHECK((in_steps.matrix() - at_once.matrix()).norm() <= 1e-14 * at_once.matrix().norm());
   (void)both;
 }
@@ -102,8 +103,8 @@ TEST_CASE("Fewer new parameters than old ones restrict the model to a line") {
   const Information a =
       Information::from_matrix({{"x", 1.0}, {"y", 2.0}}, Eigen::Matrix2d{{3.0, 1.0}, {1.0, 2.0}});
   const Information line = a.replacing({"x", "y"}, {{"t", 1.0}}, whet::exact([](const auto& at) {
-    return std::vector{at["t"], 2.0 * at["t"]};
-  }));
+                                         return std::vector{at["t"], 2.0 * at["t"]};
+                                       }));
   CHECK(Forecast(line).sigma("t") == close_to(1.0 / std::sqrt(15.0), 1e-14));
 }
 
@@ -141,8 +142,11 @@ TEST_CASE("A change of parameters that is none is refused with the reason") {
   const auto refused = [](const auto& call, const char* words) {
     CHECK_THROWS_WITH_AS((void)call(), doctest::Contains(words), ParameterError);
   };
-  refused([&] { return a.replacing({"a", "b"}, {{"u", 1.0}, {"v", 4.1}}, to_a_and_b); },
-          "expected 2, its fiducial value");
+  refused(
+      [&] {
+        return a.replacing({"a", "b"}, {{"u", 1.0}, {"v", 4.1}}, to_a_and_b);
+      },
+      "expected 2, its fiducial value");
   refused([&] { return a.replacing({}, product_and_ratio, to_a_and_b); },
           "number of parameters to replace: got 0");
   refused([&] { return a.replacing({"a", "d"}, product_and_ratio, to_a_and_b); }, "\"d\"");
@@ -155,14 +159,23 @@ TEST_CASE("A change of parameters that is none is refused with the reason") {
   const auto singular = whet::exact([](const auto& at) {
     return std::vector{at["x"] * at["y"], 0.25 * at["x"] * at["y"]};
   });
-  refused([&] { return a.replacing({"a", "b"}, {{"x", 1.0}, {"y", 2.0}}, singular); },
-          "a singular one");
+  refused(
+      [&] {
+        return a.replacing({"a", "b"}, {{"x", 1.0}, {"y", 2.0}}, singular);
+      },
+      "a singular one");
   const auto idle = whet::exact([](const auto& at) {
     return std::vector{at["x"], 0.5 + 0.0 * at["y"]};
   });
-  refused([&] { return a.replacing({"a", "b"}, {{"x", 2.0}, {"y", 2.0}}, idle); },
-          "a direction with a part along \"y\" moves none of them");
-  refused([&] { return a.holding({"c"}).replacing({"a"}, {{"c", 2.0}}, whet::exact([](const auto& at) {
-      return std::vector{at["c"]};
-    })); }, "parameter \"c\" was held");
+  refused(
+      [&] {
+        return a.replacing({"a", "b"}, {{"x", 2.0}, {"y", 2.0}}, idle);
+      },
+      "a direction with a part along \"y\" moves none of them");
+  refused(
+      [&] {
+        return a.holding({"c"}).replacing(
+            {"a"}, {{"c", 2.0}}, whet::exact([](const auto& at) { return std::vector{at["c"]}; }));
+      },
+      "parameter \"c\" was held");
 }

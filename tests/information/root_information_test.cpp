@@ -4,10 +4,10 @@
 #include <limits>
 #include <vector>
 
+#include <doctest/doctest.h>
 #include <Eigen/LU>
 #include <Eigen/SVD>
 #include <boost/multiprecision/cpp_bin_float.hpp>
-#include <doctest/doctest.h>
 
 #include <whet/information/constraints.hpp>
 
@@ -23,8 +23,8 @@ using whet::test::true_sigmas;
 
 namespace {
 
-using Wide = boost::multiprecision::number<
-    boost::multiprecision::cpp_bin_float_50::backend_type, boost::multiprecision::et_off>;
+using Wide = boost::multiprecision::number<boost::multiprecision::cpp_bin_float_50::backend_type,
+                                           boost::multiprecision::et_off>;
 
 RootInformation root_of(const Eigen::MatrixXd& rows, Eigen::Index shifts = 0) {
   RootInformation root(rows.cols() - shifts, shifts);
@@ -160,7 +160,8 @@ TEST_CASE("Integrating out is the Schur complement, and holding drops rows and c
   const Eigen::MatrixXd rows = f.llt().matrixU();
   const RootInformation root = root_of(rows);
   // By hand: 20 - 9/5, 4 - 6/5, 10 - 4/5.
-  CHECK(apart(root.integrating_out({2}).matrix(), Eigen::Matrix2d{{18.2, 2.8}, {2.8, 9.2}}) <= 1e-14);
+  CHECK(apart(root.integrating_out({2}).matrix(), Eigen::Matrix2d{{18.2, 2.8}, {2.8, 9.2}}) <=
+        1e-14);
   CHECK(apart(root.holding({2}).matrix(), f.topLeftCorner(2, 2)) <= 1e-14);
   CHECK(root.integrating_out({}).root() == root.root());
   CHECK(root.holding({}).root() == root.root());

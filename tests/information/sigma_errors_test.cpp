@@ -6,8 +6,8 @@
 #include <string>
 #include <vector>
 
-#include <Eigen/QR>
 #include <doctest/doctest.h>
+#include <Eigen/QR>
 
 #include <whet/forecasts/forecast.hpp>
 #include <whet/information/information.hpp>
@@ -47,9 +47,8 @@ Problem draw(Draws& draws, double eta, Push push) {
   // Errors are added to the rows that are given, so that eta, which is known, is of those.
   const Eigen::HouseholderQR<Eigen::MatrixXd> qr(rows);
   const Eigen::MatrixXd q = qr.householderQ() * Eigen::MatrixXd::Identity(n, count);
-  const Eigen::MatrixXd half =
-      qr.matrixQR().topRows(count).triangularView<Eigen::Upper>().solve(
-          Eigen::MatrixXd::Identity(count, count));
+  const Eigen::MatrixXd half = qr.matrixQR().topRows(count).triangularView<Eigen::Upper>().solve(
+      Eigen::MatrixXd::Identity(count, count));
   const Eigen::VectorXd sigmas = half.rowwise().norm();
   Eigen::VectorXd shares(count);
   for (Eigen::Index p = 0; p < count; ++p) shares(p) = draws.decades(-3.0, 0.0);
@@ -132,7 +131,8 @@ TEST_CASE("The stated error is the same in whatever order a forecast is made") {
     const Forecast whole(joint), swapped(b + a), out(joint.integrating_out({"p0", "p2"}));
     const Forecast one_by_one(joint.integrating_out({"p2"}).integrating_out({"p0"}));
     const auto scaled = whet::exact([](const auto& at) { return std::vector{0.5 * at["q"]}; });
-    const Forecast there(joint.replacing({"p1"}, {{"q", 2.0}}, scaled).integrating_out({"p0", "p2"}));
+    const Forecast there(
+        joint.replacing({"p1"}, {{"q", 2.0}}, scaled).integrating_out({"p0", "p2"}));
     // Held on both sides and joined, or joined and held.
     const Forecast held(joint.holding({"p1"})), before(a.holding({"p1"}) + b.holding({"p1"}));
     for (const std::string name : {"p1", "p3"}) {
@@ -147,6 +147,55 @@ TEST_CASE("The stated error is the same in whatever order a forecast is made") {
     }
     CHECK(before.numerical_error("p3") == close_to(held.numerical_error("p3"), 1e-9));
   }
+}
+
+TEST_CASE("The stated error holds for probes joined of every kind, after integrating out too") {
+  // Rows with errors, a printed matrix, and a prior, on parameters that they share in part.
+  Draws draws(20260103);
+  int bounded = 0;
+  for (int trial = 0; trial < 1000; ++trial) {
+    const Eigen::Index count = draws.integer(2, 6);
+    const Problem problem = [&] {
+      Problem drawn = draw(draws, draws.uniform(0.001, 0.6), static_cast<Push>(trial % 4));
+      while (drawn.given.cols() != count) {
+        drawn = draw(draws, draws.uniform(0.001, 0.6), static_cast<Push>(trial % 4));
+      }
+      return drawn;
+    }();
+    const Eigen::VectorXd sigmas = true_sigmas(problem.exact);
+    // Another probe, of which a matrix was printed to three digits.
+    const Eigen::MatrixXd rows = draws.normal(count + 2, count) * draws.decades(-1.0, 1.0) *
+                                 sigmas.cwiseInverse().asDiagonal();
+    Eigen::MatrixXd printed = rows.transpose() * rows;
+    for (Eigen::Index j = 0; j < count; ++j) {
+      for (Eigen::Index i = 0; i <= j; ++i) {
+        const double unit = std::pow(10.0, std::floor(std::log10(std::abs(printed(i, j)))) - 2.0);
+        printed(i, j) = printed(j, i) = std::round(printed(i, j) / unit) * unit;
+      }
+    }
+    const double prior = draws.decades(-2.0, 2.0) * sigmas(0);
+    const whet::Parameters parameters = named(count);
+    const Information joint = information_of(parameters, problem.given, problem.sizes) +
+                              Information::from_matrix(parameters, printed, {.digits = 3}) +
+                              whet::GaussianPrior("p0", prior);
+    whet::test::LongMatrix all(problem.exact.rows() + rows.rows() + 1, count);
+    all.setZero();
+    all.topRows(problem.exact.rows()) = problem.exact.cast<long double>();
+    all.middleRows(problem.exact.rows(), rows.rows()) = rows.cast<long double>();
+    all(all.rows() - 1, 0) = 1.0L / static_cast<long double>(prior);
+    const Eigen::VectorXd truth = true_sigmas(all);
+    const Forecast whole(joint), out(joint.integrating_out({"p0"}));
+    if (!whole.unconstrained_directions().empty()) continue;  // see null_space_test.cpp
+    for (Eigen::Index p = 0; p < count; ++p) {
+      const std::string& name = parameters[p].name;
+      INFO("trial ", trial, ", ", name);
+      CHECK(std::abs(whole.sigma(name) - truth(p)) <= whole.numerical_error(name));
+      if (!std::isfinite(whole.numerical_error(name))) continue;
+      ++bounded;
+      if (p > 0) CHECK(std::abs(out.sigma(name) - truth(p)) <= out.numerical_error(name));
+    }
+  }
+  CHECK(bounded > 2500);
 }
 
 TEST_CASE("Integrating a badly known nuisance out does not hide what its errors can do") {

@@ -66,14 +66,14 @@ namespace whet::detail {
     parts.shifts.push_back(shift.name);
   }
   rows = whitener.whiten(rows);
+  const Eigen::VectorXd lengths = column_norms<double>(rows);
   Eigen::VectorXd sizes(count), scatter(count);
   for (Eigen::Index p = 0; p < count; ++p) {
     const Eigen::Index column = columns[static_cast<std::size_t>(p)];
     const ColumnError error{
         derivatives.truncation().col(column), derivatives.noise().col(column),
         derivatives.reports()[static_cast<std::size_t>(column)].independent_noise};
-    sizes(p) = whitener.size(error, derivatives.signs_known()) +
-               whitener.rounding(rows.col(p).stableNorm());
+    sizes(p) = whitener.size(error, derivatives.signs_known()) + whitener.rounding(lengths(p));
     // Little of independent noise points along the rows, but its square adds to F all the same.
     scatter(p) = error.independent_noise ? whitener.independent_length(error.noise) : 0.0;
   }

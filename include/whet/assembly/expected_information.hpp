@@ -1,8 +1,8 @@
 #pragma once
 /// The information that an experiment is expected to hold on its parameters.
 
-#include <cmath>
 #include <algorithm>
+#include <cmath>
 #include <limits>
 #include <string>
 #include <utility>
@@ -14,7 +14,6 @@
 #include <whet/assembly/goals.hpp>
 #include <whet/assembly/options.hpp>
 #include <whet/assembly/whitener.hpp>
-#include <whet/derivatives/confirm.hpp>
 #include <whet/derivatives/derivatives.hpp>
 #include <whet/derivatives/differentiate.hpp>
 #include <whet/derivatives/engine.hpp>
@@ -65,8 +64,8 @@ inline void note_shortfall(Information::Parts& parts, const Derivatives& derivat
     const Eigen::Index column = derivatives.parameters().index(name);
     const std::string& why = derivatives.reports()[static_cast<std::size_t>(column)].note;
     parts.notes.push_back("sigmas to " + text(goals.reached, 2) + " where " + text(accuracy, 2) +
-                          " was asked for: the derivative by " + in_quotes(name) + " is not sharper" +
-                          (why.empty() ? "" : " (" + why + ")"));
+                          " was asked for: the derivative by " + in_quotes(name) +
+                          " is not sharper" + (why.empty() ? "" : " (" + why + ")"));
   }
 }
 
@@ -165,13 +164,12 @@ template <Likelihood L>
   if constexpr (std::is_same_v<F, Derivatives>) {
     return response;
   } else {
-    const auto call = [&response](const Point<double>& at) -> Eigen::VectorXd {
-      return detail::to_vector(response(at));
-    };
     if constexpr (detail::has_exact_derivatives<F>) {
-      const Derivatives exact = detail::exact_derivatives(parameters, response);
-      return options.confirm ? confirmed(exact, response) : exact;
+      return detail::exact_derivatives(parameters, response);
     } else {
+      const auto call = [&response](const Point<double>& at) -> Eigen::VectorXd {
+        return detail::to_vector(response(at));
+      };
       const std::vector<std::string> labels = detail::labels_of(response);
       Eigen::VectorXd mean =
           detail::evaluate_at_fiducial("expected_information", parameters, call, labels);

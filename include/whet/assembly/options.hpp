@@ -32,13 +32,13 @@ class Given {
  public:
   Given() = default;
   // Implicit, so that `.given = bittern` and `.given = {bittern, prior}` read as they are meant.
-  Given(Information information) {  // NOLINT(google-explicit-constructor)
+  Given(Information information) : join_(&join) {  // NOLINT(google-explicit-constructor)
     informations_.push_back(std::move(information));
   }
-  Given(GaussianPrior prior) {  // NOLINT(google-explicit-constructor)
+  Given(GaussianPrior prior) : join_(&join) {  // NOLINT(google-explicit-constructor)
     priors_.push_back(std::move(prior));
   }
-  Given(std::initializer_list<Given> list) {
+  Given(std::initializer_list<Given> list) : join_(&join) {
     for (const Given& each : list) {
       informations_.insert(informations_.end(), each.informations_.begin(),
                            each.informations_.end());
@@ -48,12 +48,19 @@ class Given {
 
   /// The information with all of this joined.
   [[nodiscard]] Information joined_to(Information information) const {
-    for (const Information& each : informations_) information = information + each;
-    for (const GaussianPrior& each : priors_) information = information + each;
-    return information;
+    return join_ != nullptr ? join_(*this, std::move(information)) : information;
   }
 
  private:
+  [[nodiscard]] static Information join(const Given& given, Information information) {
+    for (const Information& each : given.informations_) information = information + each;
+    for (const GaussianPrior& each : given.priors_) information = information + each;
+    return information;
+  }
+
+  // Named by the constructors that give something: a program that gives nothing need not compile
+  // it.
+  Information (*join_)(const Given&, Information){nullptr};
   std::vector<Information> informations_{};
   std::vector<GaussianPrior> priors_{};
 };
@@ -70,8 +77,6 @@ struct InformationOptions {
   std::vector<Shift> shifts{};
   /// Name of the experiment, so that it cannot count twice; empty: none.
   std::string name{};
-  /// Confirm exact derivatives by one central pair of calls a parameter.
-  bool confirm{false};
   /// Calls of the observable allowed for each parameter.
   int evaluations_per_parameter{48};
 };

@@ -31,9 +31,9 @@ struct UnconstrainedDirection {
   };
   /// The parts above a thousandth of the largest, largest first.
   std::vector<Part> parts{};
-  /// The others' sigmas hold if the direction is exactly null, or if it is known from elsewhere to
-  /// much better than this many of the units above: beyond, the errors of what is taken as null
-  /// would show. Infinite for a column of zeros.
+  /// The others' sigmas hold if the direction is exactly null; and to 2 f^2 if it is known from
+  /// elsewhere to f times this many of the units above, f < 1: beyond, the errors of what is taken
+  /// as null would show. Infinite for a column of zeros.
   double holds_to{};
 };
 
@@ -100,12 +100,14 @@ class Forecast {
     return half_row(a).dot(half_row(b));
   }
   [[nodiscard]] double correlation(std::string_view a, std::string_view b) const {
-    return a == b ? 1.0 : half_row(a).normalized().dot(half_row(b).normalized());
+    const Eigen::RowVectorXd x = half_row(a), y = half_row(b);
+    return a == b ? 1.0 : x.normalized().dot(y.normalized());
   }
   /// The covariance matrix C, P x P, in the order of the parameters; rows and columns of parameters
   /// without a finite sigma hold infinity on the diagonal and zero elsewhere.
   [[nodiscard]] Eigen::MatrixXd covariance() const {
-    Eigen::MatrixXd matrix = solved_.half * solved_.half.transpose();
+    Eigen::MatrixXd matrix =
+        detail::product<double>(solved_.half, detail::transposed<double>(solved_.half));
     for (Eigen::Index i = 0; i < matrix.rows(); ++i) {
       if (solved_.measured(i)) continue;
       matrix.row(i).setZero();
@@ -203,9 +205,10 @@ class Forecast {
       std::string note = "not measured: " + detail::in_words(direction) +
                          (alone ? "" : " (in units of their conditional sigmas)");
       if (std::isfinite(direction.holds_to)) {
-        note += "; the finite sigmas hold if it does nothing at all, or is known from elsewhere to "
-                "far better than " +
-                detail::text(direction.holds_to, 2) + (alone ? "" : " of these units");
+        note +=
+            "; the finite sigmas hold if it does nothing at all, and to two per cent if it is "
+            "known from elsewhere ten times better than to " +
+            detail::text(direction.holds_to, 2) + (alone ? "" : " of these units");
       }
       all.push_back(std::move(note));
     }
@@ -236,10 +239,14 @@ class Forecast {
       for (Eigen::Index q = 0; q < parts.size(); ++q) {
         if (!(parts(q) > worst)) continue;
         worst = parts(q);
-        Eigen::Index p = 0;
-        const double part =
-            sources.rows.row(q).transpose().cwiseProduct(norms).cwiseAbs().maxCoeff(&p);
-        words = part > 0.0 ? ", most of all by " + detail::in_quotes(parameters()[p].name) : "";
+        double largest = 0.0;
+        words.clear();
+        for (Eigen::Index p = 0; p < norms.size(); ++p) {
+          const double part = std::abs(sources.rows(q, p)) * norms(p);
+          if (!(part > largest)) continue;
+          largest = part;
+          words = ", most of all by " + detail::in_quotes(parameters()[p].name);
+        }
       }
     };
     look(errors.columns, errors_.columns.parts);

@@ -65,9 +65,9 @@ template <class Real>
   const double rounding =
       8.0 * std::numeric_limits<double>::epsilon() * std::sqrt(noise.condition());
   result.errors.columns = ErrorSources::of_columns(rounding * norms);
-  result.errors.matrices.push_back(
-      {std::move(sizes), transposed_product<double>(result.rows, result.rows),
-       Eigen::VectorXd::Zero(count)});
+  result.errors.matrices.push_back({std::move(sizes),
+                                    transposed_product<double>(result.rows, result.rows),
+                                    Eigen::VectorXd::Zero(count)});
   return result;
 }
 

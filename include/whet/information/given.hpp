@@ -135,8 +135,7 @@ Information Information::from_matrix(const Parameters& parameters,
   double of_elements = detail::element_error<double>(f, error);
   const Eigen::MatrixXd rows = detail::semidefinite_rows<double>(parameters, f, of_elements);
   // |dF_pq| <= g_p g_q.
-  ErrorSources errors =
-      ErrorSources::of_columns(std::sqrt(of_elements) * f.diagonal().cwiseSqrt());
+  ErrorSources errors = ErrorSources::of_columns(std::sqrt(of_elements) * f.diagonal().cwiseSqrt());
   return detail::given(parameters, rows,
                        {ErrorSources::none(parameters.size()), {std::move(errors)}}, options);
 }

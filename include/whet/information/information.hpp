@@ -101,7 +101,18 @@ class Information {
   /// @throws ParameterError on a name that is not there or stands twice, or when none is left
   [[nodiscard]] Information integrating_out(const std::vector<std::string>& names) const {
     const auto which = places("integrating_out", names);
-    return without(which, parts_.root.integrating_out(which), Absence::integrated_out);
+    Information left = without(which, parts_.root.integrating_out(which), Absence::integrated_out);
+    const RootInformation alone =
+        parts_.root.holding(detail::all_but(parts_.parameters.size(), which));
+    for (const double bound :
+         detail::find_null_space<double>(alone.root(), alone.errors()).bounds) {
+      if (bound == 0.0) continue;  // columns of zeros, known to be that
+      left.parts_.notes.push_back("integrating out " + detail::listed(names) +
+                                  ": a direction among them is not measured above the numerical "
+                                  "error, and was taken as one that the data do not depend on");
+      break;
+    }
+    return left;
   }
 
   /// The information on the other parameters with these held at their fiducial values.

@@ -79,9 +79,14 @@ inline void check_jacobian(const Eigen::MatrixXd& weighted, const Eigen::VectorX
     const double row = function.values().row(i).norm();
     weights(i) = norm > 0.0 ? norm : row > 0.0 ? 1.0 / row : 1.0;
   }
-  const Eigen::VectorXd errors =
-      (weights.asDiagonal() * function.errors()).colwise().sum().transpose();
-  check_jacobian(weights.asDiagonal() * function.values(), errors, fresh);
+  const Eigen::MatrixXd function_errors = function.errors();
+  Eigen::MatrixXd weighted(weights.size(), fresh.size());
+  Eigen::VectorXd errors(fresh.size());
+  for (Eigen::Index j = 0; j < fresh.size(); ++j) {
+    weighted.col(j) = weights.cwiseProduct(function.values().col(j));
+    errors(j) = weights.dot(function_errors.col(j));
+  }
+  check_jacobian(weighted, errors, fresh);
 
   // The new parameters take the place of the first old one.
   Information::Parts after = before;
@@ -118,7 +123,7 @@ inline void check_jacobian(const Eigen::MatrixXd& weighted, const Eigen::VectorX
   after.parameters = Parameters(std::move(list));
   after.root = before.root.replacing(jacobian);
   // The error of each numerical column of the Jacobian: |R dJ| <= sum_i |R_i| error_i.
-  if (!function.errors().isZero(0.0)) {
+  if (!function_errors.isZero(0.0)) {
     ErrorSources made{Eigen::VectorXd(fresh.size()),
                       Eigen::MatrixXd::Zero(fresh.size(), after.parameters.size()),
                       Eigen::VectorXd::Zero(fresh.size())};
@@ -126,7 +131,7 @@ inline void check_jacobian(const Eigen::MatrixXd& weighted, const Eigen::VectorX
       made.rows(j, first_fresh + j) = 1.0;
       made.sizes(j) = 0.0;
       for (std::size_t k = 0; k < which.size(); ++k) {
-        made.sizes(j) += norms(which[k]) * function.errors()(static_cast<Eigen::Index>(k), j);
+        made.sizes(j) += norms(which[k]) * function_errors(static_cast<Eigen::Index>(k), j);
       }
     }
     after.root.add({std::move(made), {}});

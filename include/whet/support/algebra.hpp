@@ -5,7 +5,6 @@
 /// form of expression costs every file that includes whet a part of a second to compile.
 
 #include <cmath>
-#include <cmath>
 #include <vector>
 
 #include <Eigen/Core>
