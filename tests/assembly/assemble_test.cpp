@@ -43,6 +43,22 @@ TEST_CASE("Rows are whitened derivatives, and source p is the error of column p"
   CHECK(information.parts().experiments == std::vector<std::string>{"Plover"});
 }
 
+TEST_CASE("The rounding of a million rows stays below what is stated") {
+  // Of one parameter, R is the length of the column: in long double beside.
+  const Eigen::Index n = 1000000;
+  const Eigen::VectorXd column = Eigen::VectorXd::LinSpaced(n, 0.9, 1.1);
+  long double square = 0.0L;
+  for (const double element : column) square += static_cast<long double>(element) * element;
+  const auto length = static_cast<double>(std::sqrt(square));
+  const auto noise = DiagonalCovariance::uniform(n, 1.0);
+  const Parameters one{{"x", 1.0}};
+  const Information information = whet::detail::assemble(
+      one, Derivatives(one, Eigen::VectorXd::Zero(n), column), Whitener(noise), {});
+  const double stated = information.parts().root.errors().columns.sizes(0);
+  CHECK(std::abs(information.root()(0, 0) - length) <= stated);
+  CHECK(stated <= 1e-13 * length);
+}
+
 TEST_CASE(
     "Independent noise counts by its largest element along the rows, and by its length in F") {
   Derivatives::Parts parts{.parameters = {{"x", 1.0}},

@@ -12,6 +12,7 @@
 #include <whet/forecasts/forecast.hpp>
 #include <whet/likelihoods/gaussian_likelihood.hpp>
 #include <whet/likelihoods/poisson_likelihood.hpp>
+#include <whet/observables/concatenate.hpp>
 #include <whet/observables/exact.hpp>
 #include <whet/observables/tabulate.hpp>
 
@@ -178,6 +179,26 @@ TEST_CASE("Independent noise of the derivatives moves no sigma further than stat
   }
   MESSAGE("further off than stated: ", off, " of ", all, "; widest claim ", widest);
   CHECK(off == 0);
+}
+
+TEST_CASE("Independent data in one vector hold the sum of their informations") {
+  const auto late = whet::exact([](const auto& at) {
+    return whet::tabulate(std::vector<double>{5.0, 6.0, 7.5},
+                          [&](double t) { return at["background"] + 0.01 * t * at["rate"]; });
+  });
+  const auto early = whet::exact(model);
+  const Eigen::VectorXd first = Eigen::VectorXd::Constant(25, 0.05),
+                        second = Eigen::VectorXd::Constant(3, 0.02);
+  Eigen::VectorXd both(28);
+  both << first, second;
+  const auto of = [&](const auto& observable, const Eigen::VectorXd& deviations) {
+    return expected_information(
+        parameters,
+        GaussianLikelihood(observable, DiagonalCovariance::from_standard_deviations(deviations)));
+  };
+  const Eigen::MatrixXd sum = (of(early, first) + of(late, second)).matrix();
+  const Eigen::MatrixXd whole = of(whet::concatenate(early, late), both).matrix();
+  CHECK((whole - sum).norm() <= 1e-14 * sum.norm());
 }
 
 TEST_CASE("Parameters that only rounding tells apart are not measured, the others are") {

@@ -39,5 +39,5 @@ TEST_CASE("Under correlation a signed estimate is whitened, and unsigned sizes a
   CHECK(whitener.size(alike, false) >= whitener.size(opposed, true));
   CHECK(whitener.size(alike, false) == whitener.size(opposed, false));
   const auto diagonal = DiagonalCovariance::uniform(2, 1.0);
-  CHECK(whitener.rounding(1.0) > 1e3 * Whitener(diagonal).rounding(1.0));
+  CHECK(whitener.rounding(1.0, 2) > 1e3 * Whitener(diagonal).rounding(1.0, 2));
 }

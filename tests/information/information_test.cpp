@@ -40,10 +40,10 @@ Sigmas sigmas_of(const Information& information) {
 
 void check_close(const Sigmas& got, const Sigmas& wanted, double relative) {
   REQUIRE(got.size() == wanted.size());
-  for (const auto& [name, sigma] : wanted) {
-    INFO(name);
-    REQUIRE(got.contains(name));
-    CHECK(got.at(name) == close_to(sigma, relative));
+  for (const auto& each : wanted) {
+    INFO(each.first);
+    REQUIRE(got.contains(each.first));
+    CHECK(got.at(each.first) == close_to(each.second, relative));
   }
 }
 

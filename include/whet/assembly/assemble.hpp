@@ -73,7 +73,7 @@ namespace whet::detail {
     const ColumnError error{
         derivatives.truncation().col(column), derivatives.noise().col(column),
         derivatives.reports()[static_cast<std::size_t>(column)].independent_noise};
-    sizes(p) = whitener.size(error, derivatives.signs_known()) + whitener.rounding(lengths(p));
+    sizes(p) = whitener.size(error, derivatives.signs_known()) + whitener.rounding(lengths(p), n);
     // Little of independent noise points along the rows, but its square adds to F all the same.
     scatter(p) = error.independent_noise ? whitener.independent_length(error.noise) : 0.0;
   }
