@@ -14,18 +14,14 @@ namespace {
 
 /// The column of a noisy element beside an even one without a derivative.
 struct Probe : ColumnState {
-  using ColumnState::confirmed;
-  using ColumnState::kink_;
-  using ColumnState::totals;
-
-  Probe(const Metric& metric, double noise) : ColumnState(data(0.0, noise), metric) {
+  Probe(const Metric& sizes, double level) : ColumnState(data(0.0, level), sizes) {
     for (const double t : {0.1, -0.1, 0.05, -0.05, 0.025, -0.025, 0.0125, -0.0125}) {
-      readings_.add(t, data(t, noise));
+      readings.add(t, data(t, level));
     }
     update(1.0);
   }
-  static Eigen::VectorXd data(double t, double noise) {
-    return Eigen::VectorXd{{std::cos(t + 0.5) + noise * whet::test::hash_noise(t), 3.0 + t * t}};
+  static Eigen::VectorXd data(double t, double level) {
+    return Eigen::VectorXd{{std::cos(t + 0.5) + level * whet::test::hash_noise(t), 3.0 + t * t}};
   }
 };
 
@@ -43,7 +39,7 @@ TEST_CASE("Noise counts as seen where the elements that carry it have seen it") 
 
 TEST_CASE("A kink widens the claim to most of the jump of the slope") {
   Probe column({.length = length, .size = size}, 0.0);
-  column.kink_.slope(1) = 5.0;
+  column.kinks.slope(1) = 5.0;
   CHECK(std::abs(column.error().truncation(1)) == 3.0);
   CHECK(std::abs(column.error().truncation(0)) < 1e-6);
 }

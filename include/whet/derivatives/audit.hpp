@@ -34,7 +34,7 @@ struct AuditSpread {
 };
 
 [[nodiscard]] inline AuditSpread audit_spread(const std::vector<double>& t,
-                                              const Eigen::Ref<const Eigen::RowVectorXd>& change) {
+                                              const Eigen::VectorXd& change) {
   // The outer points fix the slope; intercept and slope by least squares over all and (0, 0).
   const auto count = static_cast<double>(t.size() + 1);
   double st = 0.0, stt = 0.0, sd = 0.0, std_ = 0.0;
@@ -78,7 +78,7 @@ struct AuditSpread {
                                          double fiducial, double slope, double claim,
                                          NoiseBounds& bounds) {
   constexpr double eps = std::numeric_limits<double>::epsilon() / 2.0;
-  const Eigen::RowVectorXd change = audit.values.row(i).array() - audit.origin(i);
+  const Eigen::VectorXd change = audit.changes_of(i);
   const AuditSpread spread = audit_spread(audit.displacements, change);
   const double size = std::abs(audit.origin(i));
   const double rounding = 200.0 * eps * (size + std::abs(fiducial * slope));
@@ -104,13 +104,13 @@ struct AuditSpread {
                                      const Kinks& suspected, double bottom) {
   // Changes at + and - the outer step, then the inner one.
   if (audit.count() != 4 || audit.displacements[0] * audit.displacements[1] > 0.0) return 0;
-  const Eigen::RowVectorXd change = audit.values.row(i).array() - audit.origin(i);
+  const Eigen::VectorXd change = audit.changes_of(i);
   if (suspected.of_value(i)) {  // a side that has jumped is displaced alike at both steps
     const double height = suspected.slope(i) * bottom;
     for (const Eigen::Index side : {0, 1}) {
-      const double far = change(side), near = change(side + 2);
+      const double far = change(side), near = change(side + 2), other = change(3 - side);
       if (std::abs(near) > 0.3 * height && std::abs(near) < 1.2 * height &&
-          std::abs(far - near) < 0.05 * std::abs(near)) {
+          std::abs(other) < 0.3 * std::abs(near) && std::abs(far - near) < 0.05 * std::abs(near)) {
         return 1;
       }
     }

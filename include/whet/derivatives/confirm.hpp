@@ -75,7 +75,8 @@ class Confirmation {
   }
 
   void check_mean() const {
-    const double largest = mean_.size() > 0 ? mean_.cwiseAbs().maxCoeff() : 0.0;
+    double largest = 0.0;
+    for (Eigen::Index i = 0; i < mean_.size(); ++i) largest = std::max(largest, std::abs(mean_(i)));
     for (Eigen::Index i = 0; i < mean_.size(); ++i) {
       const double tolerance = 1e-6 * std::abs(mean_(i)) + 1e-12 * largest;
       if (std::abs(given_.mean()(i) - mean_(i)) <= tolerance) continue;
@@ -148,13 +149,15 @@ class Confirmation {
       values[static_cast<std::size_t>(p)] = at[k];
       const Eigen::VectorXd data = call(Point<double>(given_.parameters(), std::move(values)),
                                         "at " + in_quotes(parameter.name) + " = " + text(at[k]));
-      const Eigen::VectorXd change = data - mean_;
-      const double size = std::abs(weights[k]);
-      result.difference += weights[k] * change;
-      result.slope = result.slope.cwiseMax((change / t[k]).cwiseAbs());
-      // Of the data, and of the argument inside the code.
-      result.rounding += epsilon * size * (data.cwiseAbs() + mean_.cwiseAbs());
-      result.rounding += epsilon * size * std::abs(x) * result.slope;
+      const double rounding = epsilon * std::abs(weights[k]);
+      for (Eigen::Index i = 0; i < mean_.size(); ++i) {
+        const double change = data(i) - mean_(i);
+        result.difference(i) += weights[k] * change;
+        result.slope(i) = std::max(result.slope(i), std::abs(change / t[k]));
+        // Of the data, and of the argument inside the code.
+        result.rounding(i) += rounding * (std::abs(data(i)) + std::abs(mean_(i)));
+        result.rounding(i) += rounding * std::abs(x) * result.slope(i);
+      }
     }
     return result;
   }
@@ -167,19 +170,31 @@ class Confirmation {
 
     const Pair t = displacements(p, step);
     const Comparison first = compare(p, t);
-    const Eigen::VectorXd off = (first.difference - values).cwiseAbs();
-    const Eigen::VectorXd allowed = 1e-3 * values.cwiseAbs().cwiseMax(first.slope) + errors_.col(p);
-    Eigen::Array<bool, Eigen::Dynamic, 1> open = off.array() > (allowed + first.rounding).array();
+    const auto off = [&](const Comparison& by, Eigen::Index i) {
+      return std::abs(by.difference(i) - values(i));
+    };
+    const auto allowed = [&](Eigen::Index i) {
+      return 1e-3 * std::max(std::abs(values(i)), first.slope(i)) + errors_(i, p);
+    };
+    std::vector<Eigen::Index> open;  // elements in doubt
+    bool idle = true, seen = false;
+    for (Eigen::Index i = 0; i < values.size(); ++i) {
+      const double tolerance = allowed(i) + first.rounding(i);
+      if (off(first, i) > tolerance) open.push_back(i);
+      idle = idle && values(i) == 0.0;
+      seen = seen || std::abs(values(i)) > 2.0 * tolerance;
+    }
     // Truncation goes with a shorter step, noise with a longer one; a wrong derivative stays.
     for (const double factor : {1.0 / 64, 16.0}) {
-      if (!open.any()) break;
+      if (open.empty()) break;
       const Comparison again = compare(p, stretched(p, t, factor));
-      const Eigen::ArrayXd off_again = (again.difference - values).cwiseAbs().array();
-      open = open && (off_again > (allowed + again.rounding).array() ||
-                      off_again + again.rounding.array() > 0.25 * off.array());
+      std::erase_if(open, [&](Eigen::Index i) {
+        return off(again, i) <= allowed(i) + again.rounding(i) &&
+               off(again, i) + again.rounding(i) <= 0.25 * off(first, i);
+      });
     }
-    for (Eigen::Index i = 0; i < open.size(); ++i) {
-      if (!open(i)) continue;
+    if (!open.empty()) {
+      const Eigen::Index i = open.front();
       fail<DerivativeError>({.where = "confirmed",
                              .what = "parameter " + in_quotes(parameter.name) + ", derivative of " +
                                      element_name(i, given_.labels()),
@@ -190,9 +205,7 @@ class Confirmation {
                              .advice = "Either the derivative is wrong, or the observable has a "
                                        "kink, jump or noise there."});
     }
-    const bool seen = (values.array().abs() > 2.0 * (allowed + first.rounding).array()).any() ||
-                      values.isZero(0.0);
-    if (!seen) {
+    if (!idle && !seen) {
       report.note += std::string(report.note.empty() ? "" : "; ") +
                      "not confirmed: rounding hides a step of " + text(step, 2);
     }

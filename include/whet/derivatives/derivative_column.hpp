@@ -13,10 +13,10 @@
 
 #include <Eigen/Core>
 
-#include <whet/derivatives/audit.hpp>
 #include <whet/derivatives/column_state.hpp>
 #include <whet/derivatives/derivatives.hpp>
-#include <whet/derivatives/kink.hpp>
+#include <whet/derivatives/inquiry.hpp>
+#include <whet/derivatives/ladder_moves.hpp>
 #include <whet/derivatives/line.hpp>
 #include <whet/derivatives/metric.hpp>
 #include <whet/derivatives/probe.hpp>
@@ -31,19 +31,16 @@ struct ColumnOptions {
 };
 
 /// One column of derivatives. Asked for points by `next`, told their answers by `tell`, in turns.
-class DerivativeColumn : private ColumnState {
+class DerivativeColumn {
  public:
   DerivativeColumn(const Parameter& parameter, Eigen::VectorXd origin, const Metric& metric,
                    ColumnOptions options)
-      : ColumnState(std::move(origin), metric),
-        name_(parameter.name),
+      : name_(parameter.name),
+        options_(options),
         line_(parameter),
-        options_(options) {
-    audit_.origin = readings_.origin;
-    suspected_ = Kinks::none(readings_.elements());
-    cleared_ = Mask::Constant(readings_.elements(), false);
-    step_ = line_.first_step();
-  }
+        state_(std::move(origin), metric),
+        inquiry_(state_.readings.origin),
+        step_(line_.first_step()) {}
 
   /// The values of the parameter to evaluate next; empty: nothing to do, or nothing to gain.
   /// @param goal  the size of error allowed; infinity asks only for a first estimate
@@ -58,116 +55,112 @@ class DerivativeColumn : private ColumnState {
     }
     if (probing_) {
       probing_ = false;
-      step_ = probed_step(readings_, metric_);
-      readings_.keep_within(1.01 * step_);  // far probes have done their work
+      step_ = probed_step(state_.readings, state_.metric);
+      state_.readings.keep_within(1.01 * step_);  // far probes have done their work
       return ask(first_rungs());
     }
-    if (readings_.count() < 2) return ask(shrunk());
+    if (state_.readings.count() < 2) return ask(shrunk());
     if (std::isinf(goal)) return {};
-    return ask(refined(goal));
+    return ask(refined());
   }
 
   /// The answers to what `next` asked for, in its order.
   void tell(std::span<const Evaluation> answers) {
     assert(answers.size() == asked_.size());
-    for (std::size_t k = 0; k < answers.size(); ++k) {
-      const double t = asked_[k];
-      ++evaluations_;
-      const bool huge = !answers[k].failed() && answers[k].data.lpNorm<Eigen::Infinity>() > 1e140;
-      if (answers[k].failed() || huge) {  // huge: its square is beyond double precision
-        words_ = huge ? "an element is above 1e140" : answers[k].failure;
-        line_.failed(t);
-        ++failures_[t > 0.0];
-      } else if (auditing_) {
-        audit_.add(t, answers[k].data);
-      } else {
-        readings_.add(t, answers[k].data);
-        ++successes_[t > 0.0];
-      }
-    }
+    for (std::size_t k = 0; k < answers.size(); ++k) take(asked_[k], answers[k]);
     for (const int side : {-1, 1}) {
       if (failures_[side > 0] >= 2 && successes_[side > 0] == 0 && successes_[side < 0] >= 2) {
         line_.close(side);
       }
     }
     asked_.clear();
-    if (auditing_) conclude_audit();
-    auditing_ = false;
+    if (inquiry_.auditing()) inquiry_.conclude(state_, line_.fiducial());
     fresh_ = true;
-    if (readings_.count() > 0) update(line_.fiducial());
+    if (state_.readings.count() > 0) state_.update(line_.fiducial());
   }
 
-  using ColumnState::error;
-  using ColumnState::scale;
-  using ColumnState::value;
-
-  [[nodiscard]] bool estimated() const noexcept { return readings_.count() > 0 && !probing_; }
+  [[nodiscard]] const Eigen::VectorXd& value() const noexcept { return state_.estimate.value; }
+  [[nodiscard]] ColumnError error() const { return state_.error(); }
+  [[nodiscard]] double scale() const { return state_.scale(); }
+  [[nodiscard]] bool estimated() const noexcept { return state_.readings.count() > 0 && !probing_; }
   /// The size of the error; infinity before there is an estimate.
-  [[nodiscard]] double error_size() const { return estimated() ? metric_.size(error()) : infinity; }
+  [[nodiscard]] double error_size() const {
+    return estimated() ? state_.metric.size(error()) : infinity;
+  }
   /// False where more calls would not help.
   [[nodiscard]] bool can_improve() const noexcept { return !ended_; }
 
   [[nodiscard]] DerivativeReport report() const {
-    DerivativeReport report{.evaluations = evaluations_, .independent_noise = independent_};
-    for (Eigen::Index i = 0; i < readings_.elements(); ++i) {
-      if (kink_.slope(i) > 0.0 || (unresolved_ && unresolved(i))) report.elements.push_back(i);
+    DerivativeReport report{.evaluations = evaluations_, .independent_noise = state_.independent};
+    for (Eigen::Index i = 0; i < state_.readings.elements(); ++i) {
+      if (state_.kinks.slope(i) > 0.0 || state_.unresolved(i)) report.elements.push_back(i);
     }
-    const ColumnError all = error();
-    const double noise = metric_.size(noise_of(all, Mask::Constant(readings_.elements(), true)));
-    const double rounded = metric_.size(noise_of(all, noise_.rounded));
-    report.status = kink_.any()                       ? DerivativeStatus::kink
-                    : flat_                           ? DerivativeStatus::flat
-                    : error_size() <= goal_           ? DerivativeStatus::converged
-                    : unresolved_                     ? DerivativeStatus::unresolved
-                    : evaluations_ >= options_.budget ? DerivativeStatus::budget_spent
-                    : rounded > 0.5 * noise           ? DerivativeStatus::rounded
-                                                      : DerivativeStatus::noise_limited;
-    report.note = note(report);
+    report.status = state_.kinks.any()                      ? DerivativeStatus::kink
+                    : flat_                                 ? DerivativeStatus::flat
+                    : error_size() <= goal_                 ? DerivativeStatus::converged
+                    : state_.has_unresolved                 ? DerivativeStatus::unresolved
+                    : evaluations_ >= options_.budget       ? DerivativeStatus::budget_spent
+                    : state_.rounded(state_.totals().noise) ? DerivativeStatus::rounded
+                                                            : DerivativeStatus::noise_limited;
+    const auto say = [&](const std::string& sentence) {
+      report.note += (report.note.empty() ? "" : "; ") + sentence;
+    };
+    if (successes_[0] == 0 || successes_[1] == 0) {
+      say(std::string("one-sided, from ") + (successes_[1] > 0 ? "above" : "below"));
+    }
+    if (failures_[0] + failures_[1] > 0) say("some calls failed: " + words_);
+    if (report.status == DerivativeStatus::flat) say("nothing moves, as far as steps may go");
     return report;
   }
 
  private:
   static constexpr double infinity = std::numeric_limits<double>::infinity();
 
-  // --- asking -----------------------------------------------------------------------------------
-
   /// The points of these displacements that are inside, new and a motion at all.
-  [[nodiscard]] std::vector<double> ask(const std::vector<double>& displacements) {
+  [[nodiscard]] std::vector<double> ask(const std::vector<double>& wanted) {
     std::vector<double> values;
-    const auto known = [&](double t) {
-      const auto same = [t](double other) { return std::abs(t - other) <= 1e-6 * std::abs(t); };
-      return std::any_of(asked_.begin(), asked_.end(), same) ||
-             std::any_of(readings_.displacements.begin(), readings_.displacements.end(), same) ||
-             std::any_of(audit_.displacements.begin(), audit_.displacements.end(), same);
-    };
-    for (const double wanted : displacements) {
+    for (const double displacement : wanted) {
       if (evaluations_ + static_cast<int>(values.size()) >= options_.budget) break;
-      const Place place = line_.place(wanted);
+      const Place place = line_.place(displacement);
       const double t = place.displacement;
-      if (t == 0.0 || !std::isfinite(place.value) || known(t)) continue;
+      if (t == 0.0 || !std::isfinite(place.value)) continue;
+      if (among(asked_, t) || among(state_.readings.displacements, t) ||
+          among(inquiry_.audit_points(), t)) {
+        continue;
+      }
       asked_.push_back(t);
       values.push_back(place.value);
     }
-    if (values.empty()) end();
+    if (values.empty()) ended_ = true;
     return values;
   }
 
-  /// The displacements of several rungs.
-  [[nodiscard]] std::vector<double> rungs_of(const std::vector<double>& steps) const {
-    std::vector<double> all;
-    for (const double step : steps) {
-      for (const double t : line_.rung(std::max(step, line_.smallest_step()))) all.push_back(t);
+  [[nodiscard]] static bool among(const std::vector<double>& all, double t) {
+    return std::any_of(all.begin(), all.end(),
+                       [t](double other) { return std::abs(t - other) <= 1e-6 * std::abs(t); });
+  }
+
+  void take(double t, const Evaluation& answer) {
+    ++evaluations_;
+    double largest = 0.0;
+    for (Eigen::Index i = 0; i < answer.data.size(); ++i) {
+      largest = std::max(largest, std::abs(answer.data(i)));
     }
-    return all;
+    const bool huge = largest > 1e140;  // its square is beyond double precision
+    if (answer.failed() || huge) {
+      words_ = answer.failed() ? answer.failure : "an element is above 1e140";
+      line_.failed(t);
+      ++failures_[t > 0.0];
+    } else if (inquiry_.auditing()) {
+      inquiry_.add(t, answer.data);
+    } else {
+      state_.readings.add(t, answer.data);
+      ++successes_[t > 0.0];
+    }
   }
 
   [[nodiscard]] std::vector<double> first_rungs() const {
-    const double top = line_.fitted(step_);
-    const bool one_sided = line_.rung(top).size() < 2;
-    const int count = !one_sided ? options_.first_rungs : metric_.in_noise_units ? 3 : 4;
-    std::vector<double> steps;
-    for (int k = 0; k < count; ++k) steps.push_back(std::ldexp(top, -k));
-    return rungs_of(steps);
+    return first_ladder(line_, step_, options_.first_rungs, state_.metric.in_noise_units);
   }
 
   /// Too many calls failed: much smaller steps.
@@ -180,220 +173,91 @@ class DerivativeColumn : private ColumnState {
            .advice = "State the domain of the code by .lower and .upper, or a smaller .scale."});
     }
     step_ = std::ldexp(step_, -3 * shrinks_);
-    return rungs_of({line_.fitted(step_), 0.5 * line_.fitted(step_)});
+    return displacements(line_, {line_.fitted(step_), 0.5 * line_.fitted(step_)});
   }
 
-  // --- refining ---------------------------------------------------------------------------------
-
-  [[nodiscard]] std::vector<double> refined(double goal) {
-    const Totals e = totals();
-    const double length = scale();
-    if (flat()) return flat_steps();
-    if (metric_.in_noise_units && !restarted_) {
+  /// Where to look next for an error of the goal.
+  [[nodiscard]] std::vector<double> refined() {
+    const ColumnState::Totals e = state_.totals();
+    if (state_.flat()) {
+      const std::vector<double> steps = moves_.away(state_, line_);
+      flat_ = steps.empty();
+      return steps;
+    }
+    if (state_.metric.in_noise_units && options_.first_rungs < 3 && !restarted_) {
       restarted_ = true;
-      const double moved = top_move();
-      if (e.all > 5.0 * goal && moved > 2.8) {
-        const double step = ladder_top() * 0.7 / moved;
-        return rungs_of({step, 0.5 * step});
+      const double moved = state_.top_move();
+      // Two rungs at a step that moves the data by one sigma do for a loose goal, unless the noise
+      // of the code is in the way there.
+      const bool quiet = e.noise * moved / 0.7 <= 0.5 * goal_;
+      if (e.all > 5.0 * goal_ && moved > 2.8 && quiet) {
+        const double step = state_.ladder_top() * 0.7 / moved;
+        return displacements(line_, {step, 0.5 * step});
       }
     }
-    if (const auto steps = kink_steps(goal); !steps.empty()) return steps;
-    if (unresolved_structure_) {
-      unresolved_structure_ = false;
-      jumped_ = true;
-      const double outer = ladder_bottom() * audit_parts[0] / audit_parts[1];
-      return rungs_of({2.0 * outer, 0.5 * outer});
+    if (const auto steps = inquiry_.kink_steps(state_, line_, goal_); !steps.empty()) return steps;
+    if (inquiry_.settled() && state_.kinks.any()) ended_ = true;
+    if (inquiry_.take_structure()) {
+      // The audit's points have joined the ladder: go on from where its bottom was.
+      return moves_.jump_to(line_, 0.25 * state_.ladder_bottom() / audit_parts[1]);
     }
-    if (e.all <= goal) {
-      if (!(jumped_ || audited_) || supported()) return {};
-      return more({0.5 * ladder_bottom(), 0.25 * ladder_bottom()});
+    if (e.all <= goal_) {
+      if (!(moves_.jumped() || inquiry_.audited()) || supported()) return {};
+      return pair_of(line_, 0.5 * state_.ladder_bottom(), 0.25 * state_.ladder_bottom());
     }
-
-    const bool noisy =
-        e.noise > 0.5 * goal && e.noise >= e.truncation &&
-        (confirmed(e.noise) || metric_.size({Eigen::VectorXd::Zero(readings_.elements()),
-                                             estimate_.least_noise, independent_}) > e.all);
-    const bool unconverged = !noisy && e.truncation > 0.3 * length;
-    unresolved_ = false;
-    if (fresh_) {
-      fresh_ = false;
-      if (e.all < 0.6 * best_) {
-        best_ = e.all;
-        stalled_ = 0;
-      } else if (++stalled_ >= (unconverged ? 8 : 3)) {
-        unresolved_ = unconverged;
-        end();
-        return {};
-      }
-    }
-    if (noisy && !audited_ && !rounded(e.noise)) return audit_steps();
-    if (unconverged) return jump_down();
-    return noisy ? up(e) : down(e);
-  }
-
-  /// Nothing moves: far steps, then give up.
-  [[nodiscard]] std::vector<double> flat_steps() {
-    const double top = ladder_top(), step = line_.fitted(16.0 * top);
-    if (++flat_rounds_ > 2 || step < 1.05 * top) {
-      flat_ = true;
-      end();
+    // Differences of values that are rounded look like truncation.
+    const bool rounding = state_.plain_rounding() && e.noise >= 0.25 * e.truncation;
+    const bool noisy = e.noise > 0.5 * goal_ && (e.noise >= e.truncation || rounding) &&
+                       (state_.confirmed(e.noise) || state_.least_noise() > e.all);
+    const bool unconverged = !noisy && e.truncation > 0.3 * state_.scale();
+    state_.has_unresolved = false;
+    if (fresh_ && stalled(e.all, unconverged ? 8 : 3)) {
+      state_.has_unresolved = unconverged;
+      ended_ = true;
       return {};
     }
-    return rungs_of({step});
+    if (noisy && !inquiry_.audited() && !state_.rounded(e.noise) && !state_.plain_rounding()) {
+      return inquiry_.audit(state_, line_);
+    }
+    if (unconverged) return moves_.jump_down(state_, line_);
+    return noisy ? moves_.up(state_, line_, e, goal_) : moves_.down(state_, line_, e);
   }
 
-  /// Nearer and nearer, with two rungs that agree or not.
-  [[nodiscard]] std::vector<double> jump_down() {
-    const std::vector<Rung>& rungs = windows_.rungs_of(0);
-    const double bottom = ladder_bottom();
-    if (rungs.size() > 1 && rungs[1].step > 7.0 * bottom) {
-      return rungs_of({2.0 * bottom, 0.5 * bottom});
+  /// Has the error failed to fall for so many rounds?
+  [[nodiscard]] bool stalled(double error, int rounds) {
+    fresh_ = false;
+    if (error < 0.6 * best_) {
+      best_ = error;
+      stalled_ = 0;
+      return false;
     }
-    jumped_ = true;
-    const double factor = jumps_++ == 0 ? 8.0 : 64.0;
-    return rungs_of({bottom / factor, 0.5 * bottom / factor});
+    return ++stalled_ >= rounds;
   }
 
-  [[nodiscard]] std::vector<double> down(const Totals& e) {
-    const double bottom = ladder_bottom();
-    const auto touching = (estimate_.bottom.array() <= 1.001 * bottom).eval();
-    if (const double step = gap(false); step > 0.0) return rungs_of({step});
-    if (confirmed(e.noise) && metric_.size(error().of(touching)) < 0.5 * e.all && balanced_++)
-      return {};
-    return more({0.5 * bottom, 0.25 * bottom});
-  }
-
-  [[nodiscard]] std::vector<double> up(const Totals& e) {
-    const double top = ladder_top();
-    const auto touching = (estimate_.top.array() >= top / 1.001).eval();
-    if (const double step = gap(true); step > 0.0) return rungs_of({step});
-    if (metric_.size(error().of(touching)) < 0.5 * e.all && balanced_++) return {};
-    static constexpr std::array<double, 5> factors{2.0, 2.0, 4.0, 16.0, 256.0};
-    const double factor =
-        e.noise > 20.0 * e.truncation ? factors[std::min(ups_++, factors.size() - 1)] : 2.0;
-    const double step = line_.fitted(factor * top);
-    if (step < 1.05 * top) return {};
-    if (factor > 2.0) return rungs_of({step, 0.5 * step});
-    return more({step, 2.0 * step});
-  }
-
-  /// One rung of two points, or two of one.
-  [[nodiscard]] std::vector<double> more(const std::array<double, 2>& steps) const {
-    std::vector<double> all = rungs_of({steps[0]});
-    if (all.size() < 2) all = rungs_of({steps[0], steps[1]});
-    return all;
-  }
-
-  // --- the audit and kinks ----------------------------------------------------------------------
-
-  [[nodiscard]] std::vector<double> audit_steps() {
-    audited_ = auditing_ = true;
-    std::vector<double> all;
-    for (const double part : audit_parts) {
-      const double step = std::max(part * ladder_bottom(), line_.smallest_step());
-      const std::vector<double> pair = line_.rung(step);
-      all.insert(all.end(), pair.begin(), pair.end());
-      if (pair.size() == 1) all.push_back(0.63 * pair[0]);
-    }
-    return all;
-  }
-
-  void conclude_audit() {
-    const Eigen::Index n = readings_.elements();
-    if (audit_.count() < 3) return;
-    Mask structure = Mask::Constant(n, false);
-    bool open = false;
-    for (Eigen::Index i = 0; i < n; ++i) {
-      if (suspected_.slope(i) > 0.0) {
-        const int verdict = settle_kink(audit_, i, noise_.level(i), suspected_, ladder_bottom());
-        if (verdict > 0) kink_.slope(i) = suspected_.slope(i);
-        if (verdict < 0) cleared_(i) = true;
-        open = open || verdict == 0;
-      }
-      if (noise_.rounded(i)) continue;
-      const Finding finding = judge_audit(audit_, i, noise_.level(i), line_.fiducial(),
-                                          estimate_.value(i), estimate_.noise(i), bounds_);
-      structure(i) = finding == Finding::structure;
-      if (finding == Finding::none) refuted_(i) = noise_.level(i);
-    }
-    kink_settled_ = suspected_.any() && !open;
-    if (structure.any() && !kink_.any() &&
-        metric_.size(noise_of(error(), structure)) > 0.5 * totals().noise) {
-      unresolved_structure_ = true;
-      for (Eigen::Index k = 0; k < audit_.count(); ++k) {
-        readings_.add(audit_.displacements[static_cast<std::size_t>(k)], audit_.values.col(k));
-      }
-    }
-  }
-
-  /// What a suspected kink needs: an audit, then smaller pairs; empty: nothing.
-  [[nodiscard]] std::vector<double> kink_steps(double goal) {
-    if (kink_settled_) {
-      if (kink_.any()) end();
-      return {};
-    }
-    const Kinks before = suspected_;
-    suspected_ = suspected_kinks(readings_, windows_, noise_, audited_);
-    for (Eigen::Index i = 0; i < suspected_.slope.size(); ++i) {
-      // The same kink, not another accident of noise.
-      const bool other =
-          kink_retested_ && !(before.slope(i) > 0.0 && suspected_.slope(i) > 0.5 * before.slope(i));
-      if (other || cleared_(i)) suspected_.slope(i) = 0.0;
-    }
-    const bool matters = metric_.length(suspected_.slope) > 0.1 * goal;
-    if (!matters) {
-      if (kink_retested_) kink_settled_ = true;
-      return {};
-    }
-    if (!audited_) return audit_steps();
-    if (!kink_retested_) {
-      kink_retested_ = true;
-      return rungs_of({ladder_bottom() / 8.0, ladder_bottom() / 16.0});
-    }
-    kink_ = suspected_;
-    kink_settled_ = true;
-    end();
-    return {};
-  }
-
-  void end() noexcept { ended_ = true; }
-
-  [[nodiscard]] std::string note(const DerivativeReport& report) const {
-    std::string note;
-    const auto say = [&](const std::string& sentence) {
-      if (!note.empty()) note += "; ";
-      note += sentence;
-    };
-    const bool both = successes_[0] > 0 && successes_[1] > 0;
-    if (!both) say(std::string("one-sided, from ") + (successes_[1] > 0 ? "above" : "below"));
-    if (failures_[0] + failures_[1] > 0) {
-      say("some calls failed: " + words_);
-    }
-    if (report.status == DerivativeStatus::flat) say("nothing moves, as far as steps may go");
-    return note;
+  /// Three neighbouring rungs at the bottom of the ladder: two may agree by accident where the
+  /// function is known to have structure.
+  [[nodiscard]] bool supported() const {
+    const std::vector<Rung>& rungs = state_.ladder();
+    return rungs.size() >= 3 && rungs[2].step < 10.0 * rungs[0].step;
   }
 
   std::string name_;
-  Line line_;
-  Readings audit_;
   ColumnOptions options_;
+  Line line_;
+  ColumnState state_;
+  LadderMoves moves_;
+  Inquiry inquiry_;
 
   std::vector<double> asked_;  // displacements not yet answered
-  double step_{0.0};           // the first step
+  double step_;                // the first step
   double goal_{infinity};
   int evaluations_{0};
   std::array<int, 2> failures_{}, successes_{};  // below and above
   std::string words_;                            // of the last failure
 
-  bool probing_{false}, jumped_{false}, fresh_{false}, ended_{false}, restarted_{false};
-  int shrinks_{0}, stalled_{0}, jumps_{0}, balanced_{0}, flat_rounds_{0};
-  std::size_t ups_{0};
+  bool probing_{false}, fresh_{false}, ended_{false}, restarted_{false}, flat_{false};
+  int shrinks_{0}, stalled_{0};
   double best_{infinity};
-  bool flat_{false}, unresolved_structure_{false};
-  bool audited_{false}, auditing_{false};
-  Kinks suspected_;  // kinks not settled
-  Mask cleared_;     // of the suspicion of a kink
-  bool kink_settled_{false}, kink_retested_{false};
 };
 
 }  // namespace whet::detail

@@ -21,6 +21,7 @@ namespace whet::detail {
 struct SingularFit {
   Eigen::VectorXd weights{};   ///< of the part at each pair
   Eigen::VectorXd previous{};  ///< the same with the largest pair left out
+  Eigen::VectorXd change{};    ///< from these to those
 };
 
 /// Weights of the coefficient X in part(h) = X h^a + h^b (a + b h^2 + ...):
@@ -41,7 +42,9 @@ struct SingularFit {
     }
     return Eigen::VectorXd(w / unit);
   };
-  return {weights(steps.size()), weights(steps.size() - 1)};
+  SingularFit fit{weights(steps.size()), weights(steps.size() - 1)};
+  fit.change = fit.weights - fit.previous;
+  return fit;
 }
 
 /// Kinks and jumps at the fiducial value.
@@ -53,7 +56,12 @@ struct Kinks {
   [[nodiscard]] static Kinks none(Eigen::Index n) {
     return {Eigen::VectorXd::Zero(n), Mask::Constant(n, false)};
   }
-  [[nodiscard]] bool any() const { return (slope.array() > 0.0).any(); }
+  [[nodiscard]] bool any() const {
+    for (Eigen::Index i = 0; i < slope.size(); ++i) {
+      if (slope(i) > 0.0) return true;
+    }
+    return false;
+  }
 };
 
 /// The kinks that the smallest pairs make suspect.
@@ -83,26 +91,34 @@ struct Kinks {
   const std::array<Term, 3> terms{Term{singular_fit(steps, 1, 2), true, 1, 0.15},
                                   Term{singular_fit(steps, 0, 2), true, 0, 0.4},
                                   Term{singular_fit(steps, 0, 1), false, 0, 0.4}};
-  Eigen::VectorXd even(count), odd(count);
+  Eigen::VectorXd even(count), odd(count), growth(count);
   for (Eigen::Index i = 0; i < n; ++i) {
+    const Eigen::VectorXd growths = readings.growths_of(i);
     for (Eigen::Index k = 0; k < count; ++k) {
       const Rung& rung = pairs[static_cast<std::size_t>(k)];
       const double plus = readings.values(i, rung.plus) - readings.origin(i);
       const double minus = readings.values(i, rung.minus) - readings.origin(i);
       even(k) = plus + minus;
       odd(k) = plus - minus;
+      growth(k) =
+          growths(rung.plus) * growths(rung.plus) + growths(rung.minus) * growths(rung.minus);
     }
+    // A value that jumps belongs to one side: the other is displaced in both parts alike. In the
+    // even part alone it is the fiducial value that is off, by a draw of noise that all pairs
+    // share; the differences of pairs do without it.
+    const double displaced = std::abs(terms[2].fit.weights.dot(odd));
     double least_unsteady = std::numeric_limits<double>::infinity();
     for (const Term& term : terms) {
       const Eigen::VectorXd& part = term.even ? even : odd;
       const Eigen::VectorXd& w = term.fit.weights;
       const double size = w.dot(part), change = size - term.fit.previous.dot(part);
-      const auto norm = [&](const Eigen::VectorXd& v) {  // of its noise in units of the level
-        return std::sqrt(2.0 * v.squaredNorm() + (term.even ? 4.0 * v.sum() * v.sum() : 0.0));
+      // Of its noise in units of the level: that of a pair grows with its values.
+      const auto norm = [&](const Eigen::VectorXd& v) {
+        return std::sqrt(v.cwiseAbs2().dot(growth) + (term.even ? 4.0 * v.sum() * v.sum() : 0.0));
       };
       double level = noise.level(i);
       if (!certain && !noise.rounded(i)) {
-        level = std::min(level, std::abs(change) / norm(w - term.fit.previous));
+        level = std::min(level, std::abs(change) / norm(term.fit.change));
       }
       level =
           std::max(level, std::numeric_limits<double>::epsilon() * std::abs(readings.origin(i)));
@@ -112,7 +128,10 @@ struct Kinks {
         const double unsteady = std::abs(change / size);
         if (unsteady >= least_unsteady) continue;  // the term that fits best
         least_unsteady = unsteady;
-        kinks.slope(i) = term.power == 1 ? std::abs(size) : std::abs(size) / steps[0];
+        const bool one_sided = displaced > 0.5 * std::abs(size) && displaced < 2.0 * std::abs(size);
+        kinks.slope(i) = term.power == 1           ? std::abs(size)
+                         : term.even && !one_sided ? 0.0
+                                                   : std::abs(size) / steps[0];
         kinks.of_value(i) = term.power == 0;
       }
     }

@@ -14,11 +14,21 @@ struct ColumnError {
   Eigen::VectorXd noise{};        ///< n, >= 0
   bool independent_noise{false};  ///< from element to element, as far as n draws can show
 
-  /// The error of some elements alone.
-  template <class Mask>
-  [[nodiscard]] ColumnError of(const Mask& mask) const {
-    return {mask.select(truncation.array(), 0.0).matrix(), mask.select(noise.array(), 0.0).matrix(),
-            independent_noise};
+  /// The error of the elements i alone for which chosen(i).
+  template <class Chosen>
+  [[nodiscard]] ColumnError of(const Chosen& chosen) const {
+    ColumnError part = *this;
+    for (Eigen::Index i = 0; i < noise.size(); ++i) {
+      if (!chosen(i)) part.truncation(i) = part.noise(i) = 0.0;
+    }
+    return part;
+  }
+  /// The same of one kind.
+  [[nodiscard]] ColumnError of_truncation() const {
+    return {truncation, Eigen::VectorXd::Zero(noise.size()), independent_noise};
+  }
+  [[nodiscard]] ColumnError of_noise() const {
+    return {Eigen::VectorXd::Zero(noise.size()), noise, independent_noise};
   }
 };
 

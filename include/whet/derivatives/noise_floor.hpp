@@ -4,7 +4,9 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <cstddef>
 #include <limits>
+#include <utility>
 #include <vector>
 
 #include <Eigen/Core>
@@ -42,9 +44,8 @@ struct NoiseBounds {
 
 /// The noise of one element from draws of several windows: draws that agree are noise, a draw alone
 /// may be truncation. `members` gets the number that agree.
-[[nodiscard]] inline double level_of_draws(const Eigen::Ref<const Eigen::RowVectorXd>& draws,
-                                           int& members) {
-  const double smallest = draws.minCoeff();
+[[nodiscard]] inline double level_of_draws(const std::vector<double>& draws, int& members) {
+  const double smallest = *std::min_element(draws.begin(), draws.end());
   double logarithms = 0.0;
   members = 0;
   for (const double draw : draws) {
@@ -58,9 +59,31 @@ struct NoiseBounds {
                         : 0.0;
 }
 
-/// The noise of all elements.
-[[nodiscard]] inline NoiseFloor noise_floor(const Readings& readings, const Windows& windows,
-                                            const NoiseBounds& bounds) {
+/// Two draws of the noise of an element from each window, in the unit of its values.
+struct NoiseDraw {
+  double even{}, odd{};
+};
+
+/// @param change, growth  K each, of one element
+/// @param c               the contrast
+[[nodiscard]] inline NoiseDraw noise_draw(const Windows& windows, Eigen::Index c,
+                                          const Eigen::VectorXd& change,
+                                          const Eigen::VectorXd& growth) {
+  double even = 0.0, odd = 0.0, even_norm2 = 0.0, odd_norm2 = 0.0;
+  for (Eigen::Index k = 0; k < change.size(); ++k) {
+    const double e = windows.even_contrasts()(k, c), o = windows.odd_contrasts()(k, c);
+    const double growth2 = growth(k) * growth(k);
+    even += change(k) * e;
+    odd += change(k) * o;
+    even_norm2 += growth2 * (e * e);
+    odd_norm2 += growth2 * (o * o);
+  }
+  even_norm2 += windows.even_origin()(c) * windows.even_origin()(c);
+  return {even / std::sqrt(even_norm2), odd / std::sqrt(odd_norm2)};
+}
+
+/// The noise that the draws of all windows show.
+[[nodiscard]] inline NoiseFloor noise_drawn(const Readings& readings, const Windows& windows) {
   const Eigen::Index n = readings.elements();
   NoiseFloor noise{.level = Eigen::VectorXd::Zero(n),
                    .confirmed = Mask::Constant(n, false),
@@ -68,44 +91,42 @@ struct NoiseBounds {
                    .even = Eigen::VectorXd::Zero(n),
                    .odd = Eigen::VectorXd::Zero(n)};
   const std::vector<Eigen::Index>& which = windows.contrast_windows();
-  const auto count = static_cast<Eigen::Index>(which.size());
-  if (count > 0) {
-    const Eigen::MatrixXd d = readings.changes();
-    const Eigen::MatrixXd growth2 = readings.growths().cwiseAbs2();
-    const Eigen::MatrixXd even = ((d * windows.even_contrasts()).array() /
-                                  ((growth2 * windows.even_contrasts().cwiseAbs2()).rowwise() +
-                                   windows.even_origin().cwiseAbs2())
-                                      .array()
-                                      .sqrt())
-                                     .matrix();
-    const Eigen::MatrixXd odd = ((d * windows.odd_contrasts()).array() /
-                                 (growth2 * windows.odd_contrasts().cwiseAbs2()).array().sqrt())
-                                    .matrix();
-    Eigen::MatrixXd draws = ((even.cwiseAbs2() + odd.cwiseAbs2()) / 2.0).cwiseSqrt();
-    Eigen::Index longest = 0;
-    for (Eigen::Index c = 0; c < count; ++c) {
-      const Window& window = windows[which[static_cast<std::size_t>(c)]];
-      if (window.length() >= windows[which[static_cast<std::size_t>(longest)]].length())
-        longest = c;
-      const std::vector<Rung>& rungs = windows.rungs_of(0);
-      const bool no_pair =
-          std::none_of(rungs.begin() + static_cast<std::ptrdiff_t>(window.first),
-                       rungs.begin() + static_cast<std::ptrdiff_t>(window.last) + 1,
-                       [](const Rung& rung) { return rung.paired(); });
-      if (no_pair) draws.col(c) = even.col(c).cwiseAbs().cwiseMax(odd.col(c).cwiseAbs());
+  if (which.empty()) return noise;
+  std::size_t longest = 0;
+  std::vector<bool> paired(which.size());  // a pair at least
+  for (std::size_t c = 0; c < which.size(); ++c) {
+    const Window& window = windows[which[c]];
+    // Of the longest the nearest: the least truncation.
+    if (window.length() > windows[which[longest]].length()) longest = c;
+    for (std::size_t r = window.first; r <= window.last; ++r) {
+      paired[c] = paired[c] || windows.rungs_of(0)[r].paired();
     }
-    // Many elements are many draws: less has to be allowed for the luck of one.
-    const double crowd = n >= 16 ? 0.45 : 1.0;
-    for (Eigen::Index i = 0; i < n; ++i) {
-      int members = 0;
-      noise.level(i) = crowd * level_of_draws(draws.row(i), members);
-      noise.confirmed(i) = members >= 2;
-    }
-    noise.even = even.col(longest);
-    noise.odd = odd.col(longest);
   }
+  // Many elements are many draws: less has to be allowed for the luck of one.
+  const double crowd = n >= 16 ? 0.45 : 1.0;
+  std::vector<double> sizes(which.size());
   for (Eigen::Index i = 0; i < n; ++i) {
-    const double quantum = rounding_quantum(readings.origin(i), readings.values.row(i));
+    const Eigen::VectorXd change = readings.changes_of(i), growth = readings.growths_of(i);
+    for (std::size_t c = 0; c < which.size(); ++c) {
+      const NoiseDraw draw = noise_draw(windows, static_cast<Eigen::Index>(c), change, growth);
+      sizes[c] = paired[c] ? std::sqrt((draw.even * draw.even + draw.odd * draw.odd) / 2.0)
+                           : std::max(std::abs(draw.even), std::abs(draw.odd));
+      if (c == longest) noise.even(i) = draw.even, noise.odd(i) = draw.odd;
+    }
+    int members = 0;
+    noise.level(i) = crowd * level_of_draws(sizes, members);
+    noise.confirmed(i) = members >= 2;
+  }
+  return noise;
+}
+
+/// The noise of all elements.
+[[nodiscard]] inline NoiseFloor noise_floor(const Readings& readings, const Windows& windows,
+                                            const NoiseBounds& bounds) {
+  const Eigen::Index n = readings.elements();
+  NoiseFloor noise = noise_drawn(readings, windows);
+  for (Eigen::Index i = 0; i < n; ++i) {
+    const double quantum = rounding_quantum(readings.origin(i), readings.values_of(i));
     if (quantum > 0.0) {
       noise.level(i) = std::clamp(noise.level(i), 0.35 * quantum, 0.6 * quantum);
       noise.rounded(i) = noise.confirmed(i) = true;
@@ -114,15 +135,17 @@ struct NoiseBounds {
       noise.confirmed(i) = true;
     }
   }
-  if (n >= 8) {
+  if (n >= 8) {  // elements of one code are alike in their relative noise
     std::vector<double> relative;
     for (Eigen::Index i = 0; i < n; ++i) {
       if (readings.origin(i) != 0.0) {
         relative.push_back(noise.level(i) / std::abs(readings.origin(i)));
       }
     }
-    noise.level =
-        noise.level.cwiseMax(0.7 * lower_median(std::move(relative)) * readings.origin.cwiseAbs());
+    const double least = 0.7 * lower_median(std::move(relative));
+    for (Eigen::Index i = 0; i < n; ++i) {
+      noise.level(i) = std::max(noise.level(i), least * std::abs(readings.origin(i)));
+    }
   }
   for (Eigen::Index i = 0; i < n; ++i) {
     if (noise.level(i) > 0.0) noise.even(i) /= noise.level(i), noise.odd(i) /= noise.level(i);

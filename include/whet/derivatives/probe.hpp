@@ -32,7 +32,7 @@ namespace whet::detail {
   std::vector<std::pair<double, double>> slopes;  // of those that moved: step, slope
   for (Eigen::Index k = 0; k < readings.count(); ++k) {
     const double t = std::abs(readings.displacements[static_cast<std::size_t>(k)]);
-    const double change = metric.length(readings.values.col(k) - readings.origin);
+    const double change = metric.length(readings.change(k));
     if (change > noise) slopes.emplace_back(t, change / t);
   }
   if (slopes.empty()) return Line::first_part;

@@ -37,15 +37,32 @@ struct Readings {
     *this = std::move(kept);
   }
 
-  /// The changes from the fiducial point, n x K.
-  [[nodiscard]] Eigen::MatrixXd changes() const { return values.colwise() - origin; }
+  /// The change of the data vector from the fiducial point to displacement k, n.
+  [[nodiscard]] Eigen::VectorXd change(Eigen::Index k) const { return values.col(k) - origin; }
 
-  /// How much larger than at the fiducial point each value is, n x K, within 1 ... 1e6: noise that
-  /// is relative grows with it.
-  [[nodiscard]] Eigen::MatrixXd growths() const {
-    return (values.array().abs().colwise() / origin.array().abs())
-        .unaryExpr([](double g) { return g > 1.0 ? std::min(g, 1e6) : 1.0; })
-        .matrix();
+  /// The values of element i, K.
+  [[nodiscard]] Eigen::VectorXd values_of(Eigen::Index i) const {
+    return each([&](Eigen::Index k) { return values(i, k); });
+  }
+  /// The changes of element i from the fiducial point, K.
+  [[nodiscard]] Eigen::VectorXd changes_of(Eigen::Index i) const {
+    return each([&](Eigen::Index k) { return values(i, k) - origin(i); });
+  }
+  /// How much larger than at the fiducial point each value of element i is, K, within 1 ... 1e6:
+  /// noise that is relative grows with it.
+  [[nodiscard]] Eigen::VectorXd growths_of(Eigen::Index i) const {
+    return each([&](Eigen::Index k) {
+      const double growth = std::abs(values(i, k)) / std::abs(origin(i));
+      return growth > 1.0 ? std::min(growth, 1e6) : 1.0;
+    });
+  }
+
+ private:
+  template <class F>
+  [[nodiscard]] Eigen::VectorXd each(F f) const {
+    Eigen::VectorXd all(count());
+    for (Eigen::Index k = 0; k < count(); ++k) all(k) = f(k);
+    return all;
   }
 };
 

@@ -40,8 +40,7 @@ namespace whet::detail {
 /// The quantum of rounded output at the fiducial value, or 0 where the values are not rounded.
 /// @param origin  the value at the fiducial point
 /// @param values  the values elsewhere
-[[nodiscard]] inline double rounding_quantum(double origin,
-                                             const Eigen::Ref<const Eigen::RowVectorXd>& values) {
+[[nodiscard]] inline double rounding_quantum(double origin, const Eigen::VectorXd& values) {
   constexpr int most = 11;
   const Eigen::Index count = values.size();
   if (origin == 0.0 || count < 2) return 0.0;
@@ -50,8 +49,8 @@ namespace whet::detail {
   int digits = digits_needed(origin, 1, most);
   for (Eigen::Index k = 0; k < count && (single || digits <= most); ++k) {
     const double value = values(k);
-    const bool tie = value == origin || (values.head(k).array() == value).any();
-    if (tie) {
+    const double* const before = values.data() + k;
+    if (value == origin || std::find(values.data(), before, value) != before) {  // a tie
       ++ties;
       continue;
     }

@@ -39,7 +39,10 @@ namespace whet::detail {
       if (l != k) c(static_cast<Eigen::Index>(k)) /= (t[k] - t[l]) / top;
     }
   }
-  return c / c.lpNorm<Eigen::Infinity>();
+  double largest = 0.0;
+  for (Eigen::Index k = 0; k < c.size(); ++k) largest = std::max(largest, std::abs(c(k)));
+  for (Eigen::Index k = 0; k < c.size(); ++k) c(k) /= largest;
+  return c;
 }
 
 /// One step of the ladder: the positions of its nodes, -1 where a side is missing.
@@ -136,12 +139,12 @@ class Windows {
   /// Nodes x windows: the derivative of window m is the product of column m with the differences
   /// from the fiducial point, whose own weight is `origin_weights`.
   [[nodiscard]] const Eigen::MatrixXd& weights() const noexcept { return weights_; }
-  [[nodiscard]] const Eigen::RowVectorXd& origin_weights() const noexcept { return origin_; }
+  [[nodiscard]] const Eigen::VectorXd& origin_weights() const noexcept { return origin_; }
 
   /// Nodes x contrasts: highest divided differences of the mixed windows of two rungs or more, with
   /// the fiducial point (even) and without it (odd, where all is paired).
   [[nodiscard]] const Eigen::MatrixXd& even_contrasts() const noexcept { return even_; }
-  [[nodiscard]] const Eigen::RowVectorXd& even_origin() const noexcept { return even_origin_; }
+  [[nodiscard]] const Eigen::VectorXd& even_origin() const noexcept { return even_origin_; }
   [[nodiscard]] const Eigen::MatrixXd& odd_contrasts() const noexcept { return odd_; }
   /// The window each contrast belongs to.
   [[nodiscard]] const std::vector<Eigen::Index>& contrast_windows() const noexcept {
@@ -187,6 +190,7 @@ class Windows {
   void fill_weights() {
     const auto count = static_cast<Eigen::Index>(t_.size());
     weights_ = Eigen::MatrixXd::Zero(count, size());
+    origin_ = Eigen::VectorXd::Zero(size());
     std::vector<double> steps;
     for (Eigen::Index m = 0; m < size(); ++m) {
       const std::vector<Eigen::Index> members = nodes((*this)[m]);
@@ -196,8 +200,8 @@ class Windows {
       for (std::size_t k = 0; k < members.size(); ++k) {
         weights_(members[k], m) = w(static_cast<Eigen::Index>(k));
       }
+      for (Eigen::Index k = 0; k < count; ++k) origin_(m) -= weights_(k, m);
     }
-    origin_ = -weights_.colwise().sum();
   }
 
   void fill_contrasts() {
@@ -207,7 +211,7 @@ class Windows {
     const auto nodes_in_all = static_cast<Eigen::Index>(t_.size());
     const auto count = static_cast<Eigen::Index>(contrast_windows_.size());
     even_ = odd_ = Eigen::MatrixXd::Zero(nodes_in_all, count);
-    even_origin_ = Eigen::RowVectorXd::Zero(count);
+    even_origin_ = Eigen::VectorXd::Zero(count);
     std::vector<double> steps;
     for (Eigen::Index c = 0; c < count; ++c) {
       const std::vector<Eigen::Index> members =
@@ -231,10 +235,10 @@ class Windows {
   std::vector<Window> all_;
   std::vector<Eigen::Index> by_top_;
   Eigen::MatrixXd weights_;
-  Eigen::RowVectorXd origin_;
+  Eigen::VectorXd origin_;
   std::vector<Eigen::Index> contrast_windows_;
   Eigen::MatrixXd even_, odd_;
-  Eigen::RowVectorXd even_origin_;
+  Eigen::VectorXd even_origin_;
 };
 
 }  // namespace whet::detail
