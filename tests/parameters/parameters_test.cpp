@@ -7,6 +7,8 @@
 
 #include <doctest/doctest.h>
 
+#include <whet/parameters/point.hpp>
+
 using whet::numbered;
 using whet::Parameter;
 using whet::ParameterError;
@@ -71,10 +73,12 @@ TEST_CASE("A group lists the members of a numbered family") {
   CHECK_THROWS_AS((void)all.group("h"), ParameterError);
 }
 
-TEST_CASE("A family counts its members in order, wherever they stand") {
-  const Parameters mixed{{"b[0]", 1.0}, {"h", 0.7}, {"b[1]", 2.0}, {"b[5]", 3.0}};
-  CHECK(mixed.group("b") == std::vector<std::string>{"b[0]", "b[1]"});  // no b[2]
-  CHECK(mixed["b[5]"].fiducial == 3.0);
+TEST_CASE("A family has its members by number, wherever they stand and whoever is missing") {
+  const Parameters mixed{{"b[5]", 3.0}, {"b[0]", 1.0}, {"h", 0.7}, {"b[1]", 2.0}, {"b[x]", 4.0}};
+  CHECK(mixed.group("b") == std::vector<std::string>{"b[0]", "b[1]", "b[5]"});
+  CHECK(whet::Point<double>(mixed)("b", 5) == 3.0);
+  CHECK_THROWS_WITH_AS((void)whet::Point<double>(mixed)("b", 2),
+                       doctest::Contains("\"b[2]\": not among"), ParameterError);
 }
 
 TEST_CASE("A name that is not there is refused with those that are") {

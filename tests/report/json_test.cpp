@@ -58,7 +58,8 @@ bool same(const Parameters& a, const Parameters& b) {
   return a == b;
 }
 bool same(const ErrorSources& a, const ErrorSources& b) {
-  return same(a.sizes, b.sizes) && same(a.rows, b.rows) && same(a.hidden, b.hidden);
+  return same(a.sizes, b.sizes) && same(a.rows, b.rows) && same(a.hidden, b.hidden) &&
+         same(a.lengths, b.lengths);
 }
 
 void check_same(const Information& a, const Information& b) {
@@ -113,8 +114,10 @@ Information sandpiper() {
   Eigen::MatrixXd rows = Eigen::MatrixXd::Constant(4, 3, -1.0 / 7.0);
   rows(3, 2) = -infinity;
   const ErrorSources columns{Eigen::Vector4d(0.1, 0.0, infinity, denormal), rows,
-                             Eigen::Vector4d(1.0 / 3.0, 0.0, infinity, 1e-320)};
-  const ErrorSources matrix{Eigen::Vector2d(1e-9, 0.7), rows.topRows(2), Eigen::Vector2d(0.1, 0.2)};
+                             Eigen::Vector4d(1.0 / 3.0, 0.0, infinity, 1e-320),
+                             Eigen::Vector4d(2.0 / 3.0, 0.0, infinity, denormal)};
+  const ErrorSources matrix{Eigen::Vector2d(1e-9, 0.7), rows.topRows(2), Eigen::Vector2d(0.1, 0.2),
+                            Eigen::Vector2d(0.0, 0.3)};
   parts.root = whet::RootInformation::from_root(root, 3, {columns, {matrix, matrix}});
   parts.shifts = {"calibration", "blends"};
   parts.absent = {

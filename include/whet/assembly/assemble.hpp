@@ -57,6 +57,12 @@ namespace whet::detail {
                                                            : "an element that is not finite",
                              .expected = text(n) + " finite elements, one a datum"});
     }
+    if (shift.name.empty()) {
+      fail<ObservableError>({.where = "expected_information",
+                             .what = "name of shift " + text(s),
+                             .got = "an empty one",
+                             .expected = "a name to ask for the bias by"});
+    }
     if (std::find(parts.shifts.begin(), parts.shifts.end(), shift.name) != parts.shifts.end()) {
       fail<ObservableError>({.where = "expected_information",
                              .what = "shift " + in_quotes(shift.name) + " is given twice",
@@ -80,7 +86,7 @@ namespace whet::detail {
   parts.parameters = parameters;
   parts.root = RootInformation(count, shifts);
   parts.root.fold(rows);
-  NumericalErrors errors{ErrorSources::of_columns(std::move(sizes)), {}};
+  NumericalErrors errors{ErrorSources::of_columns(std::move(sizes), lengths.head(count)), {}};
   if (!scatter.isZero(0.0)) errors.matrices.push_back(ErrorSources::of_columns(std::move(scatter)));
   parts.root.add(errors);
   if (!options.name.empty()) parts.experiments.push_back(options.name);

@@ -37,7 +37,7 @@ inline void refuse_kinks(const Parameters& parameters, const Derivatives& deriva
     if (!kinked && report.status != DerivativeStatus::unresolved) continue;
     std::string where;
     for (const Eigen::Index i : report.elements) {
-      if (where.size() > 100) {
+      if (where.size() > 40) {
         where += ", ...";
         break;
       }
@@ -58,15 +58,19 @@ inline void refuse_kinks(const Parameters& parameters, const Derivatives& deriva
 inline void note_shortfall(Information::Parts& parts, const Derivatives& derivatives,
                            const Goals& goals, double accuracy) {
   if (!(goals.reached > accuracy)) return;
+  std::string which;
   for (Eigen::Index p = 0; p < parts.parameters.size(); ++p) {
     if (!(goals.excess(p) > 1.0)) continue;
     const std::string& name = parts.parameters[p].name;
     const Eigen::Index column = derivatives.parameters().index(name);
-    const std::string& why = derivatives.reports()[static_cast<std::size_t>(column)].note;
-    parts.notes.push_back("sigmas to " + text(goals.reached, 2) + " where " + text(accuracy, 2) +
-                          " was asked for: the derivative by " + in_quotes(name) +
-                          " is not sharper" + (why.empty() ? "" : " (" + why + ")"));
+    const DerivativeReport& report = derivatives.reports()[static_cast<std::size_t>(column)];
+    which += (which.empty() ? "" : ", ") + in_quotes(name) + " (" + in_words(report.status) +
+             (report.note.empty() ? "" : "; " + report.note) + ")";
   }
+  const std::string reached =
+      std::isfinite(goals.reached) ? "to " + text(goals.reached, 2) : "without a bound";
+  parts.notes.push_back("sigmas " + reached + " where " + text(accuracy, 2) + " was asked for" +
+                        (which.empty() ? "" : ", by the derivatives by " + which));
 }
 
 /// Evaluate in rounds until the derivatives are sharp enough for the forecast as a whole, or cannot

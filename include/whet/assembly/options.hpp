@@ -21,6 +21,8 @@ struct Shift {
 
   Shift(std::string its_name, Eigen::VectorXd its_data)
       : name(std::move(its_name)), data(std::move(its_data)) {}
+  Shift(std::string its_name, std::initializer_list<double> its_data)
+      : Shift(std::move(its_name), std::vector<double>(its_data)) {}
   Shift(std::string its_name, const std::vector<double>& its_data)
       : name(std::move(its_name)),
         data(Eigen::Map<const Eigen::VectorXd>(its_data.data(),

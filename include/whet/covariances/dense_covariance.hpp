@@ -77,7 +77,9 @@ class BasicDenseCovariance {
       check(matrix);
       deviations = matrix.diagonal().cwiseSqrt();
       const Vector scale = deviations.cwiseInverse();
-      correlation.compute(scale.asDiagonal() * matrix * scale.asDiagonal());
+      // The mean of both triangles, which rounding may have left apart.
+      const Matrix scaled = scale.asDiagonal() * matrix * scale.asDiagonal();
+      correlation.compute(Real(0.5) * (scaled + scaled.transpose()));
       const double reciprocal = correlation.info() == Eigen::Success ? correlation.rcond() : 0.0;
       const double least =
           std::numeric_limits<double>::epsilon() * static_cast<double>(matrix.rows());

@@ -37,15 +37,15 @@ struct AuditSpread {
                                               const Eigen::VectorXd& change) {
   // The outer points fix the slope; intercept and slope by least squares over all and (0, 0).
   const auto count = static_cast<double>(t.size() + 1);
-  double st = 0.0, stt = 0.0, sd = 0.0, std_ = 0.0;
+  double sum_t = 0.0, sum_tt = 0.0, sum_d = 0.0, sum_td = 0.0;
   for (std::size_t k = 0; k < t.size(); ++k) {
     const double d = change(static_cast<Eigen::Index>(k));
-    st += t[k], stt += t[k] * t[k], sd += d, std_ += t[k] * d;
+    sum_t += t[k], sum_tt += t[k] * t[k], sum_d += d, sum_td += t[k] * d;
   }
   AuditSpread result;
-  const double determinant = count * stt - st * st;
-  result.slope = (count * std_ - st * sd) / determinant;
-  const double intercept = (sd - result.slope * st) / count;
+  const double determinant = count * sum_tt - sum_t * sum_t;
+  result.slope = (count * sum_td - sum_t * sum_d) / determinant;
+  const double intercept = (sum_d - result.slope * sum_t) / count;
   double sum = intercept * intercept;
   for (std::size_t k = 0; k < t.size(); ++k) {
     const double off = change(static_cast<Eigen::Index>(k)) - intercept - result.slope * t[k];

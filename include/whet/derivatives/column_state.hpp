@@ -121,6 +121,12 @@ struct ColumnState {
            operations * std::numeric_limits<double>::epsilon() * metric.length(readings.origin);
   }
 
+  /// Three neighbouring rungs at the bottom of the ladder: two may agree by accident where the
+  /// function is known to have structure.
+  [[nodiscard]] bool supported() const {
+    return ladder().size() >= 3 && ladder()[2].step < 10.0 * ladder()[0].step;
+  }
+
   /// How far the largest step moves the data.
   [[nodiscard]] double top_move() const {
     double most = 0.0;

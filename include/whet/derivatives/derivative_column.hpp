@@ -180,7 +180,7 @@ class DerivativeColumn {
   [[nodiscard]] std::vector<double> refined() {
     const ColumnState::Totals e = state_.totals();
     if (state_.flat()) {
-      const std::vector<double> steps = moves_.away(state_, line_);
+      std::vector<double> steps = moves_.away(state_, line_);
       flat_ = steps.empty();
       return steps;
     }
@@ -195,14 +195,14 @@ class DerivativeColumn {
         return displacements(line_, {step, 0.5 * step});
       }
     }
-    if (const auto steps = inquiry_.kink_steps(state_, line_, goal_); !steps.empty()) return steps;
+    if (auto steps = inquiry_.kink_steps(state_, line_, goal_); !steps.empty()) return steps;
     if (inquiry_.settled() && state_.kinks.any()) ended_ = true;
     if (inquiry_.take_structure()) {
       // The audit's points have joined the ladder: go on from where its bottom was.
       return moves_.jump_to(line_, 0.25 * state_.ladder_bottom() / audit_parts[1]);
     }
     if (e.all <= goal_) {
-      if (!(moves_.jumped() || inquiry_.audited()) || supported()) return {};
+      if (!(moves_.jumped() || inquiry_.audited()) || state_.supported()) return {};
       return pair_of(line_, 0.5 * state_.ladder_bottom(), 0.25 * state_.ladder_bottom());
     }
     // Differences of values that are rounded look like truncation.
@@ -232,13 +232,6 @@ class DerivativeColumn {
       return false;
     }
     return ++stalled_ >= rounds;
-  }
-
-  /// Three neighbouring rungs at the bottom of the ladder: two may agree by accident where the
-  /// function is known to have structure.
-  [[nodiscard]] bool supported() const {
-    const std::vector<Rung>& rungs = state_.ladder();
-    return rungs.size() >= 3 && rungs[2].step < 10.0 * rungs[0].step;
   }
 
   std::string name_;

@@ -2,6 +2,7 @@
 /// The derivatives of an observable at the fiducial point, each with its error: what the
 /// evaluations bought, kept as a value.
 
+#include <cmath>
 #include <string>
 #include <utility>
 #include <vector>
@@ -25,6 +26,35 @@ enum class DerivativeStatus {
   unresolved,     ///< structure finer than any step tried
   budget_spent,   ///< stopped by the number of evaluations allowed
 };
+
+namespace detail {
+
+/// What limits a column of derivatives.
+[[nodiscard]] inline std::string in_words(DerivativeStatus status) {
+  switch (status) {
+    case DerivativeStatus::exact:
+      return "exact, but for rounding";
+    case DerivativeStatus::given:
+      return "as given";
+    case DerivativeStatus::converged:
+      return "rounding";
+    case DerivativeStatus::noise_limited:
+      return "noise of the code";
+    case DerivativeStatus::rounded:
+      return "rounded output";
+    case DerivativeStatus::flat:
+      return "nothing moves";
+    case DerivativeStatus::kink:
+      return "a kink or jump";
+    case DerivativeStatus::unresolved:
+      return "structure not resolved";
+    case DerivativeStatus::budget_spent:
+      return "the calls allowed are spent";
+  }
+  return {};
+}
+
+}  // namespace detail
 
 /// What is known of how one column of derivatives was made.
 struct DerivativeReport {
@@ -83,7 +113,11 @@ class Derivatives {
     check_matrix("values", parts_.values, false);
     check_matrix("errors", parts_.truncation, !parts_.signs_known);
     check_matrix("noise", parts_.noise, true);
-    if (!parts_.mean.allFinite()) refuse("mean", "an element that is not finite", "finite numbers");
+    for (Eigen::Index i = 0; i < n; ++i) {
+      if (!std::isfinite(parts_.mean(i))) {
+        refuse("mean", "an element that is not finite", "finite numbers");
+      }
+    }
     if (!parts_.labels.empty() && static_cast<Eigen::Index>(parts_.labels.size()) != n) {
       refuse("labels", detail::text(parts_.labels.size()), detail::text(n) + ", one an element");
     }
@@ -101,13 +135,18 @@ class Derivatives {
   /// A bound on the error of each derivative, n x P, same units. Rounding of the observable's own
   /// arithmetic is in it where it was seen; exact derivatives have zeros.
   [[nodiscard]] Eigen::MatrixXd errors() const {
-    return parts_.truncation.cwiseAbs() + parts_.noise;
+    Eigen::MatrixXd all = parts_.noise;
+    for (Eigen::Index p = 0; p < all.cols(); ++p) {
+      for (Eigen::Index i = 0; i < all.rows(); ++i) all(i, p) += std::abs(parts_.truncation(i, p));
+    }
+    return all;
   }
   /// The part of the error that comes from steps of finite size, n x P, signed where `signs_known`:
   /// neighbouring elements err alike, and correlated data notice.
   [[nodiscard]] const Eigen::MatrixXd& truncation() const noexcept { return parts_.truncation; }
   [[nodiscard]] bool signs_known() const noexcept { return parts_.signs_known; }
-  /// The part of the error that comes from the noise of the code, n x P, >= 0.
+  /// The part of the error that comes from the noise of the code, n x P, >= 0: a bound, of three
+  /// standard deviations or more, also where a report says that it is independent.
   [[nodiscard]] const Eigen::MatrixXd& noise() const noexcept { return parts_.noise; }
   /// Names of the elements for messages; empty: none were given.
   [[nodiscard]] const std::vector<std::string>& labels() const noexcept { return parts_.labels; }

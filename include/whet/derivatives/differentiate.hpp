@@ -1,6 +1,7 @@
 #pragma once
 /// Derivatives of an observable on their own, each with its error.
 
+#include <cmath>
 #include <limits>
 #include <span>
 #include <string>
@@ -16,6 +17,7 @@
 #include <whet/observables/exact.hpp>
 #include <whet/observables/observable.hpp>
 #include <whet/parameters/parameters.hpp>
+#include <whet/support/algebra.hpp>
 #include <whet/support/error.hpp>
 
 namespace whet {
@@ -51,6 +53,26 @@ namespace detail {
   return std::move(evaluation.data);
 }
 
+/// Refuse derivatives that do not exist, or that no step resolved: for functions of the parameters
+/// whose derivatives all matter.
+inline void refuse_kinks(const std::string& where, const Derivatives& derivatives) {
+  for (Eigen::Index p = 0; p < derivatives.parameters().size(); ++p) {
+    const DerivativeStatus status = derivatives.reports()[static_cast<std::size_t>(p)].status;
+    const double error = derivatives.errors().col(p).stableNorm();
+    const bool vague = error > 0.1 * derivatives.values().col(p).stableNorm() &&
+                       status != DerivativeStatus::flat && status != DerivativeStatus::converged;
+    if (status != DerivativeStatus::kink && status != DerivativeStatus::unresolved && !vague)
+      continue;
+    fail<DerivativeError>({.where = where,
+                           .what = "the derivative of the function by parameter " +
+                                   in_quotes(derivatives.parameters()[p].name) + " at " +
+                                   text(derivatives.parameters()[p].fiducial),
+                           .got = "a kink, a jump or an error of " + text(error, 2),
+                           .expected = "a function that is differentiable there",
+                           .advice = "Mark it exact, give the parameter a scale, or move it."});
+  }
+}
+
 /// The engine with one observable at hand, until every column is as good as asked for, or as can
 /// be.
 [[nodiscard]] inline Derivatives differentiate_numerically(const Parameters& parameters,
@@ -58,9 +80,11 @@ namespace detail {
                                                            std::vector<std::string> labels,
                                                            const DifferentiateOptions& options) {
   Eigen::VectorXd mean = evaluate_at_fiducial("differentiate", parameters, observable, labels);
-  const auto length = [](const Eigen::VectorXd& data) { return data.stableNorm(); };
-  const auto size = [](const ColumnError& error) {
-    return (error.truncation.cwiseAbs() + error.noise).stableNorm();
+  const auto length = [](const Eigen::VectorXd& data) { return column_norms<double>(data)(0); };
+  const auto size = [&](const ColumnError& error) {
+    Eigen::VectorXd all = error.noise;
+    for (Eigen::Index i = 0; i < all.size(); ++i) all(i) += std::abs(error.truncation(i));
+    return length(all);
   };
   DerivativeEngine engine(parameters, std::move(mean), labels, {.length = length, .size = size},
                           {.first_rungs = options.accuracy < 1e-3 ? 3 : 2,

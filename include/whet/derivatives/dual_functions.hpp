@@ -3,6 +3,7 @@
 
 #include <cmath>
 #include <cstddef>
+#include <type_traits>
 
 #include <whet/derivatives/dual.hpp>
 #include <whet/derivatives/dual_chain.hpp>
@@ -67,9 +68,12 @@ template <class Real, std::size_t N>
 template <class Real, std::size_t N, detail::ConstantFor<Dual<Real, N>> P>
 [[nodiscard]] Dual<Real, N> pow(const Dual<Real, N>& x, const P& p) {
   using std::pow;
+  using Exponent = std::conditional_t<std::is_integral_v<P>, P, Real>;  // not narrower than x
+  const Exponent power(p);
   // The exponent 0 apart: 0 * x^-1 is no number at x = 0.
-  const Real slope = detail::vanishes(p) ? Real(0) : Real(Real(p) * pow(x.value(), p - 1));
-  return detail::chain<Real>(x, pow(x.value(), p), slope);
+  const Real slope =
+      detail::vanishes(p) ? Real(0) : Real(Real(p) * pow(x.value(), power - Exponent(1)));
+  return detail::chain<Real>(x, pow(x.value(), power), slope);
 }
 /// b^y for a constant b.
 template <class Real, std::size_t N, detail::ConstantFor<Dual<Real, N>> B>

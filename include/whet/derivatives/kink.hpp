@@ -40,10 +40,12 @@ struct SingularFit {
       unit += c(at) * std::pow(steps[k], singular - smooth);
       w(at) = c(at) / std::pow(steps[k], smooth);
     }
-    return Eigen::VectorXd(w / unit);
+    for (Eigen::Index k = 0; k < w.size(); ++k) w(k) /= unit;
+    return w;
   };
   SingularFit fit{weights(steps.size()), weights(steps.size() - 1)};
-  fit.change = fit.weights - fit.previous;
+  fit.change = fit.weights;
+  for (Eigen::Index k = 0; k < fit.change.size(); ++k) fit.change(k) -= fit.previous(k);
   return fit;
 }
 
@@ -114,7 +116,9 @@ struct Kinks {
       const double size = w.dot(part), change = size - term.fit.previous.dot(part);
       // Of its noise in units of the level: that of a pair grows with its values.
       const auto norm = [&](const Eigen::VectorXd& v) {
-        return std::sqrt(v.cwiseAbs2().dot(growth) + (term.even ? 4.0 * v.sum() * v.sum() : 0.0));
+        double sum = 0.0, squares = 0.0;
+        for (Eigen::Index k = 0; k < count; ++k) sum += v(k), squares += v(k) * v(k) * growth(k);
+        return std::sqrt(squares + (term.even ? 4.0 * sum * sum : 0.0));
       };
       double level = noise.level(i);
       if (!certain && !noise.rounded(i)) {

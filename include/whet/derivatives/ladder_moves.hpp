@@ -38,8 +38,8 @@ namespace whet::detail {
   const double top = line.fitted(step);
   const bool one_sided = line.rung(top).size() < 2;
   const int count = !one_sided ? rungs : in_noise_units ? 3 : 4;
-  std::vector<double> steps;
-  for (int k = 0; k < count; ++k) steps.push_back(std::ldexp(top, -k));
+  std::vector<double> steps(static_cast<std::size_t>(count), top);
+  for (std::size_t k = 1; k < steps.size(); ++k) steps[k] = 0.5 * steps[k - 1];
   return displacements(line, steps);
 }
 

@@ -38,20 +38,22 @@ struct Readings {
   }
 
   /// The change of the data vector from the fiducial point to displacement k, n.
-  [[nodiscard]] Eigen::VectorXd change(Eigen::Index k) const { return values.col(k) - origin; }
+  [[nodiscard]] Eigen::VectorXd change(Eigen::Index k) const {
+    return filled(elements(), [&](Eigen::Index i) { return values(i, k) - origin(i); });
+  }
 
   /// The values of element i, K.
   [[nodiscard]] Eigen::VectorXd values_of(Eigen::Index i) const {
-    return each([&](Eigen::Index k) { return values(i, k); });
+    return filled(count(), [&](Eigen::Index k) { return values(i, k); });
   }
   /// The changes of element i from the fiducial point, K.
   [[nodiscard]] Eigen::VectorXd changes_of(Eigen::Index i) const {
-    return each([&](Eigen::Index k) { return values(i, k) - origin(i); });
+    return filled(count(), [&](Eigen::Index k) { return values(i, k) - origin(i); });
   }
   /// How much larger than at the fiducial point each value of element i is, K, within 1 ... 1e6:
   /// noise that is relative grows with it.
   [[nodiscard]] Eigen::VectorXd growths_of(Eigen::Index i) const {
-    return each([&](Eigen::Index k) {
+    return filled(count(), [&](Eigen::Index k) {
       const double growth = std::abs(values(i, k)) / std::abs(origin(i));
       return growth > 1.0 ? std::min(growth, 1e6) : 1.0;
     });
@@ -59,9 +61,9 @@ struct Readings {
 
  private:
   template <class F>
-  [[nodiscard]] Eigen::VectorXd each(F f) const {
-    Eigen::VectorXd all(count());
-    for (Eigen::Index k = 0; k < count(); ++k) all(k) = f(k);
+  [[nodiscard]] static Eigen::VectorXd filled(Eigen::Index size, F f) {
+    Eigen::VectorXd all(size);
+    for (Eigen::Index k = 0; k < size; ++k) all(k) = f(k);
     return all;
   }
 };

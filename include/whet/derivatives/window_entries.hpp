@@ -3,7 +3,9 @@
 
 #include <algorithm>
 #include <cmath>
+#include <cstddef>
 #include <limits>
+#include <vector>
 
 #include <Eigen/Core>
 
@@ -27,8 +29,7 @@ class EntryTable {
   /// @param fiducial  the value of the parameter: its rounding is noise too
   EntryTable(const Readings& readings, const Windows& windows, double fiducial)
       : readings_(readings),
-        weights_(windows.weights()),
-        steps_(windows.weights()),
+        terms_(static_cast<std::size_t>(windows.size())),
         origin2_(windows.size()),
         step_origin2_(windows.size()),
         plain2_(windows.size()),
@@ -38,9 +39,12 @@ class EntryTable {
       const Eigen::Index neighbour = windows[m].neighbour;
       double step_sum = 0.0, square_sum = 0.0;
       for (Eigen::Index k = 0; k < readings.count(); ++k) {
-        if (neighbour >= 0) steps_(k, m) -= weights_(k, neighbour);
-        step_sum += steps_(k, m);
-        square_sum += square(weights_(k, m));
+        const double weight = windows.weights()(k, m);
+        const double step = neighbour < 0 ? weight : weight - windows.weights()(k, neighbour);
+        if (weight == 0.0 && step == 0.0) continue;
+        terms_[static_cast<std::size_t>(m)].push_back({k, weight, square(weight), square(step)});
+        step_sum += step;
+        square_sum += square(weight);
       }
       origin2_(m) = square(windows.origin_weights()(m));
       step_origin2_(m) = square(step_sum);
@@ -51,7 +55,7 @@ class EntryTable {
   /// @param level  the noise of element i
   [[nodiscard]] WindowEntries of(Eigen::Index i, double level) const {
     constexpr double eps = std::numeric_limits<double>::epsilon() / 2.0;
-    const Eigen::Index count = weights_.cols();
+    const Eigen::Index count = origin2_.size();
     WindowEntries entries{.value = Eigen::VectorXd(count),
                           .noise = Eigen::VectorXd(count),
                           .difference = Eigen::VectorXd(count),
@@ -62,12 +66,12 @@ class EntryTable {
     for (Eigen::Index k = 0; k < f.size(); ++k) largest = std::max(largest, std::abs(f(k)));
     for (Eigen::Index m = 0; m < count; ++m) {
       double value = 0.0, spread2 = 0.0, step_spread2 = 0.0, rounding2 = 0.0;
-      for (Eigen::Index k = 0; k < f.size(); ++k) {
-        const double weight2 = square(weights_(k, m)), growth2 = square(growth(k));
-        value += weights_(k, m) * (f(k) - f0);
-        spread2 += weight2 * growth2;
-        step_spread2 += square(steps_(k, m)) * growth2;
-        rounding2 += weight2 * square(f(k));
+      for (const Term& term : terms_[static_cast<std::size_t>(m)]) {
+        const double at = f(term.node), growth2 = square(growth(term.node));
+        value += term.weight * (at - f0);
+        spread2 += term.weight2 * growth2;
+        step_spread2 += term.step2 * growth2;
+        rounding2 += term.weight2 * square(at);
       }
       spread2 += origin2_(m);
       step_spread2 += step_origin2_(m);
@@ -82,11 +86,16 @@ class EntryTable {
   }
 
  private:
+  /// A node of a window: its weight, and the squares of that and of its change from the neighbour.
+  struct Term {
+    Eigen::Index node;
+    double weight, weight2, step2;
+  };
+
   [[nodiscard]] static double square(double x) noexcept { return x * x; }
 
   const Readings& readings_;
-  const Eigen::MatrixXd& weights_;  // nodes x windows
-  Eigen::MatrixXd steps_;           // the same of the differences between neighbours
+  std::vector<std::vector<Term>> terms_;  // of each window
   Eigen::VectorXd origin2_, step_origin2_, plain2_;
   double deviations_, argument_;
 };

@@ -37,11 +37,14 @@ using ObservableRef = FunctionRef<Eigen::VectorXd(const Point<double>&)>;
 }
 
 /// Call the observable once. An exception, or an element that is not finite, is a failure in words.
+/// @throws ParameterError where it asks for a parameter that is not there
 [[nodiscard]] inline Evaluation evaluate(ObservableRef observable, const Point<double>& at,
                                          std::span<const std::string> labels = {}) {
   Evaluation evaluation;
   try {
     evaluation.data = observable(at);
+  } catch (const ParameterError&) {
+    throw;  // a name that the model misspells is no failure of a point
   } catch (const std::exception& error) {
     evaluation.failure = error.what();
     if (evaluation.failure.empty()) evaluation.failure = "an exception without a message";

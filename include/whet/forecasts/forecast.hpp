@@ -46,7 +46,9 @@ template <class F>
   if constexpr (has_exact_derivatives<F>) {
     return differentiate(parameters, exact(vector)).values().row(0).transpose();
   } else {
-    return differentiate(parameters, vector, {.accuracy = 1e-10}).values().row(0).transpose();
+    const Derivatives gradient = differentiate(parameters, vector, {.accuracy = 1e-10});
+    refuse_kinks("derived_sigma", gradient);
+    return gradient.values().row(0).transpose();
   }
 }
 
@@ -83,13 +85,18 @@ class Forecast {
   /// @throws ParameterError on a name that is not there, as everything below
   [[nodiscard]] double sigma(std::string_view name) const { return solved_.sigmas(index(name)); }
 
-  /// The standard deviation of a parameter if all others were known, in its unit.
+  /// The standard deviation of a parameter if all others were known, in its unit; infinite where
+  /// nothing shows above the numerical error even then.
   [[nodiscard]] double conditional_sigma(std::string_view name) const {
-    return 1.0 / root().root_with_shifts().col(index(name)).norm();
+    const Eigen::Index place = index(name);
+    const double norm = detail::column_norms<double>(root().root())(place);
+    const double error = root().errors().bound(Eigen::VectorXd::Unit(parameters().size(), place));
+    return norm > error ? 1.0 / norm : std::numeric_limits<double>::infinity();
   }
 
   /// A bound on the error of sigma(name) from the errors of the derivatives, noise, rounding and
-  /// printed digits, in its unit. Infinite where there is no bound; the notes say which derivatives
+  /// printed digits, in its unit; an unconstrained direction is taken to do nothing at all, as the
+  /// notes say. Infinite where there is no bound; the notes say which derivatives
   /// to improve. Zero where sigma is infinite.
   [[nodiscard]] double numerical_error(std::string_view name) const {
     return errors_.sizes(index(name));
@@ -200,19 +207,29 @@ class Forecast {
   /// What weakens this forecast, in sentences: from the information, and of the numbers themselves.
   [[nodiscard]] std::vector<std::string> notes() const {
     std::vector<std::string> all = information_.notes();
+    const NumericalErrors errors = root().errors();
+    bool resolved = true;
+    Eigen::Index k = 0;
     for (const UnconstrainedDirection& direction : unconstrained_directions()) {
+      if (errors.columns.unresolved(solved_.null.directions.col(k++))) {
+        resolved = false;
+        all.push_back(
+            "the derivatives along " + detail::in_words(direction) +
+            " are all error: it may matter as much as any, so no sigma has a bound on its "
+            "numerical error; make the code quieter, or add a prior");
+        continue;
+      }
       const bool alone = direction.parts.size() == 1;
       std::string note = "not measured: " + detail::in_words(direction) +
                          (alone ? "" : " (in units of their conditional sigmas)");
-      if (std::isfinite(direction.holds_to)) {
-        note +=
-            "; the finite sigmas hold if it does nothing at all, and to two per cent if it is "
-            "known from elsewhere ten times better than to " +
-            detail::text(direction.holds_to, 2) + (alone ? "" : " of these units");
+      // Where more is known of it from elsewhere than the errors exclude, it is no longer null.
+      if (direction.holds_to < 1e6) {
+        note += "; the finite sigmas take it to do nothing, which is known to 1/" +
+                detail::text(direction.holds_to, 2) + " a unit";
       }
       all.push_back(std::move(note));
     }
-    if (errors_.sizes.size() > 0 &&
+    if (resolved && errors_.sizes.size() > 0 &&
         errors_.sizes.maxCoeff() == std::numeric_limits<double>::infinity()) {
       all.push_back(
           "no bound on the numerical errors: those of the derivatives, or of the digits that a "

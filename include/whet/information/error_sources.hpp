@@ -20,26 +20,32 @@ struct ErrorSources {
   /// K, >= 0, in the unit of the column's own parameter: the part of the forecast error of that
   /// combination which was integrated out. Errors of higher order still feel it.
   Eigen::VectorXd hidden{};
+  /// K: the length of the column itself when it was made; 0 where that is not known, or nothing
+  /// moved. A column that is all error is no evidence that its parameter does nothing.
+  Eigen::VectorXd lengths{};
 
-  /// One source for each of P columns.
-  [[nodiscard]] static ErrorSources of_columns(Eigen::VectorXd sizes) {
+  /// One source for each of P columns, of these lengths where they are known.
+  [[nodiscard]] static ErrorSources of_columns(Eigen::VectorXd sizes,
+                                               Eigen::VectorXd lengths = {}) {
     const Eigen::Index count = sizes.size();
-    return {std::move(sizes), Eigen::MatrixXd::Identity(count, count),
-            Eigen::VectorXd::Zero(count)};
+    if (lengths.size() == 0) lengths = Eigen::VectorXd::Zero(count);
+    return {std::move(sizes), Eigen::MatrixXd::Identity(count, count), Eigen::VectorXd::Zero(count),
+            std::move(lengths)};
   }
   [[nodiscard]] static ErrorSources none(Eigen::Index parameters) {
-    return {Eigen::VectorXd(0), Eigen::MatrixXd(0, parameters), Eigen::VectorXd(0)};
+    return {Eigen::VectorXd(0), Eigen::MatrixXd(0, parameters), Eigen::VectorXd(0),
+            Eigen::VectorXd(0)};
   }
 
   /// The same errors after another linear change of the columns, J: P x P'.
   [[nodiscard]] ErrorSources through(const Eigen::MatrixXd& jacobian) const {
-    return {sizes, detail::product<double>(rows, jacobian), hidden};
+    return {sizes, detail::product<double>(rows, jacobian), hidden, lengths};
   }
   /// The same errors with some parameters integrated out.
   /// @param transfer  P x P', and `half`, P x N: see detail::IntegratedOut
   [[nodiscard]] ErrorSources without(const Eigen::MatrixXd& transfer,
                                      const Eigen::MatrixXd& half) const {
-    return {sizes, detail::product<double>(rows, transfer), sigmas(half)};
+    return {sizes, detail::product<double>(rows, transfer), sigmas(half), lengths};
   }
   /// K: the forecast error of each combination rows.row(q), for C = half half^T.
   [[nodiscard]] Eigen::VectorXd sigmas(const Eigen::MatrixXd& half) const {
@@ -57,6 +63,18 @@ struct ErrorSources {
     const Eigen::MatrixXd parts = detail::product<double>(rows, x);
     for (Eigen::Index q = 0; q < sizes.size(); ++q) sum += sizes(q) * std::abs(parts(q, 0));
     return sum;
+  }
+
+  /// Does a column that is all error, above a tenth of its length, carry the direction x? Then x
+  /// may matter as much as any, for all that is known.
+  [[nodiscard]] bool unresolved(const Eigen::VectorXd& x) const {
+    const double all = bound(x);
+    const Eigen::MatrixXd parts = detail::product<double>(rows, x);
+    for (Eigen::Index q = 0; q < sizes.size(); ++q) {
+      const bool all_error = lengths(q) > 0.0 && sizes(q) > 0.1 * lengths(q);
+      if (all_error && sizes(q) * std::abs(parts(q, 0)) > 0.1 * all) return true;
+    }
+    return false;
   }
 
   /// The squared norm over the sources of what each does to a parameter's own column.
@@ -79,6 +97,8 @@ struct ErrorSources {
     sizes.tail(more) = others.sizes;
     rows.bottomRows(more) = others.rows;
     hidden.tail(more) = others.hidden;
+    lengths.conservativeResize(old + more);
+    lengths.tail(more) = others.lengths;
   }
 };
 
@@ -104,7 +124,8 @@ struct NumericalErrors {
   /// The same errors of rows multiplied by a factor.
   [[nodiscard]] NumericalErrors times(double factor) const {
     return each([&](const ErrorSources& sources) {
-      return ErrorSources{sources.sizes * factor, sources.rows, sources.hidden / factor};
+      return ErrorSources{sources.sizes * factor, sources.rows, sources.hidden / factor,
+                          sources.lengths * factor};
     });
   }
   void append(const NumericalErrors& others) {

@@ -60,8 +60,9 @@ class GaussianPrior {
            .what = "parameter " + detail::in_quotes(name) + " is given twice",
            .advice = "Names must differ."});
     }
-    detail::CovarianceRows whitened = detail::rows_of_covariance<typename Derived::Scalar>(
-        "GaussianPrior", covariance, std::numeric_limits<double>::epsilon());
+    detail::CovarianceRows whitened =
+        detail::rows_of_covariance<double>("GaussianPrior", covariance.template cast<double>(),
+                                           std::numeric_limits<double>::epsilon());
     rows_ = std::move(whitened.rows);
     errors_ = std::move(whitened.errors);
   }

@@ -113,7 +113,7 @@ template <class Real>
 }
 
 [[nodiscard]] inline Information given(const Parameters& parameters, const Eigen::MatrixXd& rows,
-                                       NumericalErrors errors, const GivenOptions& options) {
+                                       const NumericalErrors& errors, const GivenOptions& options) {
   Information::Parts parts;
   parts.parameters = parameters;
   parts.root = RootInformation(parameters.size());
@@ -149,7 +149,7 @@ Information Information::from_covariance(const Parameters& parameters,
   detail::check_given<double>(parameters, c, error);
   detail::CovarianceRows whitened =
       detail::rows_of_covariance<double>("Information::from_covariance", c, error);
-  return detail::given(parameters, whitened.rows, std::move(whitened.errors), options);
+  return detail::given(parameters, whitened.rows, whitened.errors, options);
 }
 
 }  // namespace whet

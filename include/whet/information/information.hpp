@@ -158,13 +158,17 @@ class Information {
   /// All that two experiments, independent of each other, hold together; parameters are matched by
   /// name, others are added. Commutes and associates.
   /// @throws ParameterError by name where one side still knows a parameter that the other has
-  ///   integrated out, held or replaced, where both have integrated out the same name, where
+  ///   integrated out, held or replaced, where both have integrated out or
+  ///   replaced the same name, where
   ///   fiducial values or units differ, or where an experiment of the same name would count twice
   friend Information operator+(const Information& a, const Information& b);
 
   /// The information with a prior joined.
   /// @throws ParameterError if it does not know a parameter of the prior
   friend Information operator+(const Information& information, const GaussianPrior& prior);
+  friend Information operator+(const GaussianPrior& prior, const Information& information) {
+    return information + prior;
+  }
 
  private:
   /// Positions of names, each there and given once.
@@ -301,7 +305,7 @@ inline Information operator+(const Information& a, const Information& b) {
   all.absent = left.absent;
   for (const auto& [name, absence] : right.absent) {
     const auto [known, fresh] = all.absent.emplace(name, absence);
-    if (fresh || (known->second == absence && absence != Absence::integrated_out)) continue;
+    if (fresh || (known->second == absence && absence == Absence::held)) continue;
     detail::fail<ParameterError>(
         {.where = "joining",
          .what = "parameter " + detail::in_quotes(name) + " was " +
@@ -337,6 +341,10 @@ inline Information operator+(const Information& a, const Information& b) {
   all.notes = left.notes;
   detail::unite(all.notes, right.notes);
   all.has_prior = left.has_prior || right.has_prior;
+  if (left.has_prior && right.has_prior) {
+    detail::unite(all.notes, {"both sides of a sum hold a prior: one on the same parameter counts "
+                              "twice; join experiments first, then the prior"});
+  }
   RootInformation root(all.parameters.size(), static_cast<Eigen::Index>(all.shifts.size()));
   detail::fold_aligned(root, all, left);
   detail::fold_aligned(root, all, right);

@@ -1,6 +1,7 @@
 #pragma once
 /// New parameters in place of old ones, by their Jacobian.
 
+#include <algorithm>
 #include <cmath>
 #include <string>
 #include <utility>
@@ -70,14 +71,14 @@ inline void check_jacobian(const Eigen::MatrixXd& weighted, const Eigen::VectorX
                           .expected = text(which.size()) + ", one an old parameter"});
   }
   check_fiducials(before.parameters, which, function);
+  refuse_kinks("replacing", function);
 
   const Eigen::Index old_count = before.parameters.size();
   const Eigen::VectorXd norms = column_norms<double>(before.root.root());
+  const Eigen::VectorXd row_norms = column_norms<double>(transposed<double>(function.values()));
   Eigen::VectorXd weights(function.mean().size());
   for (Eigen::Index i = 0; i < weights.size(); ++i) {
-    const double norm = norms(which[static_cast<std::size_t>(i)]);
-    const double row = function.values().row(i).norm();
-    weights(i) = norm > 0.0 ? norm : row > 0.0 ? 1.0 / row : 1.0;
+    weights(i) = row_norms(i) > 0.0 ? 1.0 / row_norms(i) : 1.0;
   }
   const Eigen::MatrixXd function_errors = function.errors();
   Eigen::MatrixXd weighted(weights.size(), fresh.size());
@@ -126,7 +127,7 @@ inline void check_jacobian(const Eigen::MatrixXd& weighted, const Eigen::VectorX
   if (!function_errors.isZero(0.0)) {
     ErrorSources made{Eigen::VectorXd(fresh.size()),
                       Eigen::MatrixXd::Zero(fresh.size(), after.parameters.size()),
-                      Eigen::VectorXd::Zero(fresh.size())};
+                      Eigen::VectorXd::Zero(fresh.size()), Eigen::VectorXd::Zero(fresh.size())};
     for (Eigen::Index j = 0; j < fresh.size(); ++j) {
       made.rows(j, first_fresh + j) = 1.0;
       made.sizes(j) = 0.0;

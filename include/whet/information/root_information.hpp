@@ -263,3 +263,5 @@ class BasicRootInformation {
 using RootInformation = BasicRootInformation<double>;
 
 }  // namespace whet
+
+#include <whet/information/constraints.hpp>  // defines sigmas()

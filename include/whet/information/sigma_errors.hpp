@@ -60,11 +60,17 @@ struct SigmaErrors {
   const double eta = bounds.columns.parts.sum();
   const double least = eta < 1.0 ? (1.0 - eta) * (1.0 - eta) - h : 0.0;
 
+  // What is taken as null must be so for a reason.
+  bool resolved = true;
+  for (Eigen::Index k = 0; k < solved.null.size(); ++k) {
+    resolved = resolved && !errors.columns.unresolved(solved.null.directions.col(k));
+  }
+
   bounds.sizes = Eigen::VectorXd::Zero(solved.sigmas.size());
   for (Eigen::Index a = 0; a < bounds.sizes.size(); ++a) {
     const double sigma = solved.sigmas(a);
     if (!(sigma < infinity)) continue;
-    if (!(least > 0.0)) {
+    if (!(least > 0.0) || !resolved) {
       bounds.sizes(a) = infinity;
       continue;
     }

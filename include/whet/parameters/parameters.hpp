@@ -2,10 +2,13 @@
 /// The parameters of a model: ordered, with unique names.
 
 #include <algorithm>
+#include <charconv>
+#include <functional>
 #include <initializer_list>
 #include <memory>
 #include <string>
 #include <string_view>
+#include <system_error>
 #include <unordered_map>
 #include <utility>
 #include <vector>
@@ -31,11 +34,16 @@ class NameTable {
                               .advice = "Names must differ."});
       }
       names_.push_back(p.name);
-      // A member name[i] counts for its family when i runs 0, 1, 2, ... in order.
+      // name[k] is member k of its family, wherever it stands and whoever else is there.
       const auto bracket = p.name.rfind('[');
-      if (bracket == std::string::npos || bracket == 0) continue;
+      if (bracket == std::string::npos || bracket == 0 || p.name.back() != ']') continue;
+      std::size_t k = 0;
+      const char* const end = p.name.data() + p.name.size() - 1;
+      const auto read = std::from_chars(p.name.data() + bracket + 1, end, k);
+      if (read.ec != std::errc() || read.ptr != end || k >= most_members) continue;
       std::vector<Eigen::Index>& family = families_[p.name.substr(0, bracket)];
-      if (p.name.substr(bracket) == "[" + text(family.size()) + "]") family.push_back(index);
+      if (family.size() <= k) family.resize(k + 1, -1);
+      family[k] = index;
     }
   }
 
@@ -47,7 +55,8 @@ class NameTable {
     return place == places_.end() ? -1 : place->second;
   }
 
-  /// Positions of name[0], name[1], ...; empty where there is no such family.
+  /// Positions of name[0], name[1], ..., -1 for one that is not there; empty where there is no such
+  /// family.
   [[nodiscard]] const std::vector<Eigen::Index>& family(std::string_view name) const {
     static const std::vector<Eigen::Index> none;
     const auto place = families_.find(name);
@@ -70,6 +79,7 @@ class NameTable {
   }
 
  private:
+  static constexpr std::size_t most_members = 1'000'000;
   struct Hash {
     using is_transparent = void;  // look up by string_view, without making a string
     std::size_t operator()(std::string_view name) const noexcept {
@@ -132,11 +142,13 @@ class Parameters {
 
   [[nodiscard]] const std::vector<std::string>& names() const noexcept { return table_->names(); }
 
-  /// The names bias[0], bias[1], ... of a numbered family.
+  /// The names bias[0], bias[1], ... of a numbered family, those that are there, by number.
   /// @throws ParameterError if there is none
   [[nodiscard]] std::vector<std::string> group(std::string_view family) const {
     std::vector<std::string> members;
-    for (const Eigen::Index i : table_->family(family)) members.push_back((*this)[i].name);
+    for (const Eigen::Index i : table_->family(family)) {
+      if (i >= 0) members.push_back((*this)[i].name);
+    }
     if (members.empty()) table_->unknown("Parameters::group", std::string(family) + "[0]");
     return members;
   }

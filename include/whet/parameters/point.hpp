@@ -47,7 +47,8 @@ class Point {
   /// @throws ParameterError if there is no such member
   [[nodiscard]] const Scalar& operator()(std::string_view family, Eigen::Index i) const {
     const std::vector<Eigen::Index>& members = table_->family(family);
-    if (i < 0 || i >= static_cast<Eigen::Index>(members.size())) {
+    if (i < 0 || i >= static_cast<Eigen::Index>(members.size()) ||
+        members[static_cast<std::size_t>(i)] < 0) {
       table_->unknown("Point", std::string(family) + "[" + detail::text(i) + "]");
     }
     return values_[static_cast<std::size_t>(members[static_cast<std::size_t>(i)])];

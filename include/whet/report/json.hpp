@@ -14,7 +14,8 @@
 ///     "shifts"       their names, S
 ///     "root"         R with the shifts last, (P + S) x (P + S), zeros below the diagonal
 ///     "errors"       the numerical errors: {"columns": sources, "matrices": [sources, ...]}, where
-///                    K sources are {"sizes": K, "rows": K x P, "hidden": K}
+///                    K sources are {"sizes": K, "rows": K x P, "hidden": K,
+///                     "lengths": K}
 ///     "absent"       what it once knew: [{"name", "why"}, ...]; why: "integrated_out", "held" or
 ///                    "replaced"
 ///     "experiments", "notes"            strings;  "has_prior": true or false
@@ -95,13 +96,14 @@ inline constexpr Spellings<DerivativeStatus, 9> statuses{
 [[nodiscard]] inline Json in_json(const ErrorSources& sources) {
   return {{"sizes", in_json(sources.sizes)},
           {"rows", in_json(sources.rows)},
-          {"hidden", in_json(sources.hidden)}};
+          {"hidden", in_json(sources.hidden)},
+          {"lengths", in_json(sources.lengths)}};
 }
 
 [[nodiscard]] inline ErrorSources sources_in(const Field& field, Eigen::Index parameters) {
   const Eigen::VectorXd sizes = field["sizes"].sizes();
   return {sizes, field["rows"].matrix(sizes.size(), parameters),
-          field["hidden"].sizes(sizes.size())};
+          field["hidden"].sizes(sizes.size()), field["lengths"].sizes(sizes.size())};
 }
 
 inline void check_kind(const Field& document, const std::string& format) {

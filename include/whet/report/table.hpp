@@ -36,12 +36,13 @@ namespace detail {
 /// A finite number rounded to some significant digits, zeros at the end included; in scientific
 /// notation only where it would be long.
 [[nodiscard]] inline std::string rounded(double value, int digits) {
+  if (!std::isfinite(value)) return "-";
   char buffer[64];
   const auto format = [&](std::chars_format how, int places) {
     return std::string(buffer,
                        std::to_chars(buffer, buffer + sizeof buffer, value, how, places).ptr);
   };
-  const std::string scientific = format(std::chars_format::scientific, digits - 1);
+  std::string scientific = format(std::chars_format::scientific, digits - 1);
   const auto power = scientific.find('e');
   const int exponent = std::stoi(scientific.substr(power + 1));
   if (exponent < -4 || exponent > 5) return scientific;
