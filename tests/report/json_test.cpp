@@ -534,7 +534,7 @@ TEST_CASE("What could not be read again is not written, and the old file stays")
   };
   CHECK(refused([](auto& parts) {
           parts.root.add({{Eigen::VectorXd::Constant(1, std::nan("")), Eigen::MatrixXd::Ones(1, 3),
-                           Eigen::VectorXd::Zero(1)},
+                           Eigen::VectorXd::Zero(1), Eigen::VectorXd::Zero(1)},
                           {}});
         }).find("kept.json: errors.columns.sizes[4]: got null, expected a number") !=
         std::string::npos);

@@ -72,7 +72,7 @@ namespace whet::detail {
     parts.shifts.push_back(shift.name);
   }
   rows = whitener.whiten(rows);
-  const Eigen::VectorXd lengths = column_norms<double>(rows);
+  Eigen::VectorXd lengths = column_norms<double>(rows);
   Eigen::VectorXd sizes(count), scatter(count);
   for (Eigen::Index p = 0; p < count; ++p) {
     const Eigen::Index column = columns[static_cast<std::size_t>(p)];
@@ -82,6 +82,8 @@ namespace whet::detail {
     sizes(p) = whitener.size(error, derivatives.signs_known()) + whitener.rounding(lengths(p), n);
     // Little of independent noise points along the rows, but its square adds to F all the same.
     scatter(p) = error.independent_noise ? whitener.independent_length(error.noise) : 0.0;
+    // Independent noise fills a column with more than it can do along any one direction.
+    if (scatter(p) > 0.0) lengths(p) *= sizes(p) / (sizes(p) + scatter(p));
   }
   parts.parameters = parameters;
   parts.root = RootInformation(count, shifts);
