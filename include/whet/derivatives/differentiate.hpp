@@ -56,11 +56,13 @@ namespace detail {
 /// Refuse derivatives that do not exist, or that no step resolved: for functions of the parameters
 /// whose derivatives all matter.
 inline void refuse_kinks(const std::string& where, const Derivatives& derivatives) {
+  const Eigen::VectorXd errors = column_norms<double>(derivatives.errors());
+  const Eigen::VectorXd norms = column_norms<double>(derivatives.values());
   for (Eigen::Index p = 0; p < derivatives.parameters().size(); ++p) {
     const DerivativeStatus status = derivatives.reports()[static_cast<std::size_t>(p)].status;
-    const double error = derivatives.errors().col(p).stableNorm();
-    const bool vague = error > 0.1 * derivatives.values().col(p).stableNorm() &&
-                       status != DerivativeStatus::flat && status != DerivativeStatus::converged;
+    const double error = errors(p);
+    const bool vague = error > 0.1 * norms(p) && status != DerivativeStatus::flat &&
+                       status != DerivativeStatus::converged;
     if (status != DerivativeStatus::kink && status != DerivativeStatus::unresolved && !vague)
       continue;
     fail<DerivativeError>({.where = where,

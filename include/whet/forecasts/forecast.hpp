@@ -155,12 +155,11 @@ class Forecast {
       weights /= weights(first);
       UnconstrainedDirection direction;
       direction.holds_to = largest / solved_.null.bounds[static_cast<std::size_t>(k)];
-      for (Eigen::Index p = 0; p < weights.size(); ++p) {
-        if (std::abs(weights(p)) > 1e-3)
-          direction.parts.push_back({parameters()[p].name, weights(p)});
+      for (Eigen::Index p = first; std::abs(weights(p)) > 1e-3;) {
+        direction.parts.push_back({parameters()[p].name, weights(p)});
+        weights(p) = 0.0;
+        weights.cwiseAbs().maxCoeff(&p);
       }
-      std::stable_sort(direction.parts.begin(), direction.parts.end(),
-                       [](auto& a, auto& b) { return std::abs(a.weight) > std::abs(b.weight); });
       directions.push_back(std::move(direction));
     }
     return directions;

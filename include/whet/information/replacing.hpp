@@ -21,8 +21,10 @@ namespace detail {
 /// terms it is made of.
 inline void check_fiducials(const Parameters& before, const std::vector<Eigen::Index>& which,
                             const Derivatives& function) {
-  const Eigen::VectorXd terms =
-      function.values().cwiseAbs() * function.parameters().fiducials().cwiseAbs();
+  Eigen::VectorXd terms = Eigen::VectorXd::Zero(function.mean().size());
+  for (Eigen::Index j = 0; j < function.parameters().size(); ++j) {
+    terms += std::abs(function.parameters()[j].fiducial) * function.values().col(j).cwiseAbs();
+  }
   for (std::size_t i = 0; i < which.size(); ++i) {
     const Parameter& old = before[which[i]];
     const auto row = static_cast<Eigen::Index>(i);
