@@ -2,7 +2,6 @@
 /// What an information says of the parameters: standard deviations, correlations, biases, and how
 /// far the numbers themselves can be trusted.
 
-#include <algorithm>
 #include <cmath>
 #include <limits>
 #include <string>
@@ -107,8 +106,8 @@ class Forecast {
     return half_row(a).dot(half_row(b));
   }
   [[nodiscard]] double correlation(std::string_view a, std::string_view b) const {
-    const Eigen::RowVectorXd x = half_row(a), y = half_row(b);
-    return a == b ? 1.0 : x.normalized().dot(y.normalized());
+    const Eigen::VectorXd x = half_row(a), y = half_row(b);
+    return a == b ? 1.0 : x.dot(y) / x.norm() / y.norm();
   }
   /// The covariance matrix C, P x P, in the order of the parameters; rows and columns of parameters
   /// without a finite sigma hold infinity on the diagonal and zero elsewhere.
@@ -273,7 +272,7 @@ class Forecast {
   }
 
   /// Row a of A, C = A A^T, for a parameter that has a finite sigma.
-  [[nodiscard]] Eigen::RowVectorXd half_row(std::string_view name) const {
+  [[nodiscard]] Eigen::VectorXd half_row(std::string_view name) const {
     const Eigen::Index place = index(name);
     if (!solved_.measured(place)) {
       detail::fail<ParameterError>(
@@ -283,7 +282,9 @@ class Forecast {
            .expected = "a parameter that is measured",
            .advice = "See unconstrained_directions(); a prior or another probe can fix it."});
     }
-    return solved_.half.row(place);
+    Eigen::VectorXd row(solved_.half.cols());
+    for (Eigen::Index p = 0; p < row.size(); ++p) row(p) = solved_.half(place, p);
+    return row;
   }
 
   struct PairRoot {
@@ -297,9 +298,11 @@ class Forecast {
                                     .got = detail::in_quotes(a) + " twice",
                                     .expected = "two different ones"});
     }
-    const Eigen::RowVectorXd first = half_row(a), second = half_row(b);
+    const Eigen::VectorXd first = half_row(a);
+    Eigen::VectorXd second = half_row(b);
     const double l11 = first.norm(), l21 = second.dot(first) / l11;
-    return {l11, l21, (second - (l21 / l11) * first).norm()};
+    for (Eigen::Index p = 0; p < second.size(); ++p) second(p) -= l21 / l11 * first(p);
+    return {l11, l21, second.norm()};
   }
 
   Information information_;
