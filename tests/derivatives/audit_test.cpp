@@ -28,11 +28,11 @@ NoiseBounds no_bounds() {
           Eigen::VectorXd::Constant(1, std::numeric_limits<double>::infinity())};
 }
 
-int settled(const Readings& audit, double slope, bool of_value) {
+int settled(const Readings& audit, double slope, bool of_value, double crowd = 0.0) {
   Kinks kinks = Kinks::none(1);
   kinks.slope(0) = slope;
   kinks.of_value(0) = of_value;
-  return whet::detail::settle_kink(audit, 0, 1e-12, kinks, 0.05);
+  return whet::detail::settle_kink(audit, 0, 1e-12, crowd, kinks, 0.05);
 }
 
 }  // namespace
@@ -64,4 +64,31 @@ TEST_CASE("An audit settles kinks and jumps") {
   CHECK(settled(audited([](double t) { return t * t; }), 2.0, false) == -1);
   CHECK(settled(audited([](double t) { return t > 0 ? 1.0 : 0.0; }), 20.0, true) == 1);
   CHECK(settled(audited([](double t) { return t; }), 20.0, true) == -1);
+}
+
+TEST_CASE("A kink or a jump is settled only above the noise that the elements beside it show") {
+  const Readings kink = audited([](double t) { return 1 + std::abs(t); });
+  const Readings jump = audited([](double t) { return t > 0 ? 1.02 : 1.0; });
+  for (const double crowd : {0.0, 1e-9}) {
+    CHECK(settled(kink, 2.0, false, crowd) == 1);
+    CHECK(settled(jump, 0.4, true, crowd) == 1);
+  }
+  CHECK(settled(kink, 2.0, false, 1e-6) == 0);
+  CHECK(settled(jump, 0.4, true, 1e-2) == 0);
+}
+
+TEST_CASE("The noise beside a suspect is seen by the audit, and none where all are suspects") {
+  Readings audit{.origin = Eigen::VectorXd{{1.0, 10.0, 10.0}}};
+  for (const double t : {1e-3, -1e-3, 1e-6, -1e-6}) {
+    const double noise = 1e-4 * whet::test::hash_noise(t);
+    audit.add(t, Eigen::VectorXd{{1.0 + std::abs(t), 10.0 + noise, 10.0 - noise}});
+  }
+  Kinks suspected = Kinks::none(3);
+  suspected.slope(0) = 2.0;
+  const auto crowd = whet::detail::crowd_noise(audit, suspected);
+  CHECK(crowd.at(1.0) > 1e-6);
+  CHECK(crowd.at(1.0) < 1e-3);
+  CHECK(crowd.at(1e4) > 100.0 * crowd.at(1.0));  // of a larger value the relative noise
+  suspected.slope.setOnes();
+  CHECK(whet::detail::crowd_noise(audit, suspected).at(1.0) == 0.0);
 }

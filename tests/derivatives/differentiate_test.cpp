@@ -228,3 +228,22 @@ TEST_CASE("Ninety-nine in a hundred claims on random functions hold") {
   CHECK(count == 1080);
   CHECK(honest_count >= 0.99 * count);
 }
+
+TEST_CASE("Among many elements with noise none is taken for a kink") {
+  int kinks = 0;
+  for (std::uint64_t seed = 0; seed < 100; ++seed) {
+    const auto curve = [seed](const whet::Point<double>& at) {
+      std::vector<double> data;
+      for (std::uint64_t i = 0; i < 40; ++i) {
+        const double x = 0.1 * static_cast<double>(i + 1);
+        data.push_back(std::exp(-at["k"] * x) +
+                       1e-4 * whet::test::hash_noise(at["k"], 40 * seed + i));
+      }
+      return data;
+    };
+    const auto d = whet::differentiate(whet::Parameters{{.name = "k", .fiducial = 0.8}}, curve,
+                                       {.accuracy = 1e-6});
+    kinks += d.reports()[0].status == whet::DerivativeStatus::kink ? 1 : 0;
+  }
+  CHECK(kinks == 0);
+}

@@ -97,3 +97,15 @@ TEST_CASE("Noise alike in neighbours, or a fixed pattern of signs, is found depe
 TEST_CASE("Fewer than sixteen elements show nothing") {
   CHECK(!shown(readings(15, [](Eigen::Index i, int k) { return 1e-6 * draw(1, i, k); })));
 }
+
+TEST_CASE("Elements near zero have no say in the relative noise of the others") {
+  Readings all = readings(12, [](Eigen::Index, int) { return 0.0; });
+  const double clean = floor_of(all).level(0);
+  for (Eigen::Index i = 3; i < 12; ++i) {  // wings that change by as much as themselves
+    all.origin(i) = 1e-9;
+    for (std::size_t k = 0; k < steps.size(); ++k) {
+      all.values(i, static_cast<Eigen::Index>(k)) = 1e-9 * std::exp(60.0 * steps[k]);
+    }
+  }
+  CHECK(floor_of(all).level(0) < 10.0 * clean);
+}

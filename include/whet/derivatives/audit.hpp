@@ -5,6 +5,7 @@
 #include <array>
 #include <cmath>
 #include <limits>
+#include <utility>
 #include <vector>
 
 #include <Eigen/Core>
@@ -68,6 +69,13 @@ struct AuditSpread {
   return result;
 }
 
+/// Noise up to here may be the rounding of the arithmetic, of values and of arguments.
+[[nodiscard]] inline double most_rounding(double value, double fiducial, double slope) {
+  constexpr double operations = 100.0;  // whose rounding adds up
+  return operations * std::numeric_limits<double>::epsilon() *
+         (std::abs(value) + std::abs(fiducial * slope));
+}
+
 /// Judge one element.
 /// @param audit     readings at the audit points
 /// @param level     the noise level it was thought to have
@@ -77,11 +85,10 @@ struct AuditSpread {
 [[nodiscard]] inline Finding judge_audit(const Readings& audit, Eigen::Index i, double level,
                                          double fiducial, double slope, double claim,
                                          NoiseBounds& bounds) {
-  constexpr double eps = std::numeric_limits<double>::epsilon() / 2.0;
   const Eigen::VectorXd change = audit.changes_of(i);
   const AuditSpread spread = audit_spread(audit.displacements, change);
   const double size = std::abs(audit.origin(i));
-  const double rounding = 200.0 * eps * (size + std::abs(fiducial * slope));
+  const double rounding = most_rounding(size, fiducial, slope);
   const bool real = spread.innermost > rounding && spread.innermost > 0.1 * spread.spread;
   if (spread.innermost > 0.05 * level || real) {
     bounds.least(i) = 1.6 * spread.spread;
@@ -98,10 +105,34 @@ struct AuditSpread {
   return std::abs(spread.slope - slope) < 5e-3 * claim ? Finding::none : Finding::correlated;
 }
 
+/// The noise that an audit sees in the elements which are not suspected of a kink: a kink of few
+/// elements must stand above it.
+struct CrowdNoise {
+  double relative{}, absolute{};  ///< 0 where every element is suspected
+
+  /// As elements may be alike in either, the larger.
+  [[nodiscard]] double at(double value) const {
+    return std::max(relative * std::abs(value), absolute);
+  }
+};
+
+[[nodiscard]] inline CrowdNoise crowd_noise(const Readings& audit, const Kinks& suspected) {
+  std::vector<double> relative, absolute;
+  for (Eigen::Index i = 0; i < audit.elements(); ++i) {
+    if (suspected.slope(i) > 0.0) continue;
+    const double draw = audit_spread(audit.displacements, audit.changes_of(i)).innermost;
+    absolute.push_back(draw);
+    if (audit.origin(i) != 0.0) relative.push_back(draw / std::abs(audit.origin(i)));
+  }
+  return {lower_median(std::move(relative)), lower_median(std::move(absolute))};
+}
+
 /// Does an audit confirm (1) or refute (-1) a kink that the ladder suspects? 0: it cannot tell.
+/// @param crowd   the noise of elements beside it
 /// @param bottom  the smallest step of the ladder, over which a jump of the value makes the slope
 [[nodiscard]] inline int settle_kink(const Readings& audit, Eigen::Index i, double level,
-                                     const Kinks& suspected, double bottom) {
+                                     double crowd, const Kinks& suspected, double bottom) {
+  constexpr double certain = 6.0;  // standard deviations: no chance among many elements
   // Changes at + and - the outer step, then the inner one.
   if (audit.count() != 4 || audit.displacements[0] * audit.displacements[1] > 0.0) return 0;
   const Eigen::VectorXd change = audit.changes_of(i);
@@ -109,8 +140,9 @@ struct AuditSpread {
     const double height = suspected.slope(i) * bottom;
     for (const Eigen::Index side : {0, 1}) {
       const double far = change(side), near = change(side + 2), other = change(3 - side);
-      if (std::abs(near) > 0.3 * height && std::abs(near) < 1.2 * height &&
-          std::abs(other) < 0.3 * std::abs(near) && std::abs(far - near) < 0.05 * std::abs(near)) {
+      if (std::abs(near) > std::max(0.3 * height, certain * crowd) &&
+          std::abs(near) < 1.2 * height && std::abs(other) < 0.3 * std::abs(near) &&
+          std::abs(far - near) < 0.05 * std::abs(near)) {
         return 1;
       }
     }
@@ -119,7 +151,10 @@ struct AuditSpread {
   const double jump = suspected.slope(i), step = std::abs(audit.displacements[0]);
   const double outer = std::abs(change(0) + change(1)) / step;
   const double inner = std::abs(change(2) + change(3)) / std::abs(audit.displacements[2]);
-  if (std::min(outer, inner) > 0.03 * jump && outer < 4.0 * inner && inner < 4.0 * outer) return 1;
+  // A second difference has the norm sqrt(1 + 1 + 4).
+  const bool seen = inner * std::abs(audit.displacements[2]) > certain * std::sqrt(6.0) * crowd;
+  const bool steady = outer < 4.0 * inner && inner < 4.0 * outer;
+  if (seen && steady && std::min(outer, inner) > 0.03 * jump) return 1;
   return outer + 6.0 * level / step < 0.2 * jump ? -1 : 0;
 }
 

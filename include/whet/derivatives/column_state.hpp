@@ -9,6 +9,7 @@
 
 #include <Eigen/Core>
 
+#include <whet/derivatives/audit.hpp>
 #include <whet/derivatives/estimate.hpp>
 #include <whet/derivatives/kink.hpp>
 #include <whet/derivatives/metric.hpp>
@@ -90,6 +91,18 @@ struct ColumnState {
     return noise_of(noise.confirmed) > 0.5 * total;
   }
   [[nodiscard]] bool rounded(double total) const { return noise_of(noise.rounded) > 0.5 * total; }
+  /// Noise that is no more than rounding has nothing to tell an audit.
+  [[nodiscard]] bool rounding_only(double total, double fiducial) const {
+    Mask plain(refuted.size());
+    for (Eigen::Index i = 0; i < plain.size(); ++i) {
+      plain(i) = noise.level(i) <= most_rounding(readings.origin(i), fiducial, estimate.value(i));
+    }
+    return noise_of(plain) > 0.5 * total;
+  }
+  /// The rounding of the values themselves, in the metric.
+  [[nodiscard]] double rounding() const {
+    return std::numeric_limits<double>::epsilon() * metric.length(readings.origin);
+  }
   /// The size of the noise had the smallest rung been used alone.
   [[nodiscard]] double least_noise() const {
     return metric.size(
@@ -113,13 +126,6 @@ struct ColumnState {
   [[nodiscard]] const std::vector<Rung>& ladder() const { return windows.rungs_of(0); }
   [[nodiscard]] double ladder_top() const { return ladder().back().step; }
   [[nodiscard]] double ladder_bottom() const { return ladder().front().step; }
-
-  /// Is the noise no more than what arithmetic in double makes of values of this size?
-  [[nodiscard]] bool plain_rounding() const {
-    constexpr double operations = 30.0;  // whose rounding adds up, at the most
-    return metric.length(noise.level) <
-           operations * std::numeric_limits<double>::epsilon() * metric.length(readings.origin);
-  }
 
   /// Three neighbouring rungs at the bottom of the ladder: two may agree by accident where the
   /// function is known to have structure.

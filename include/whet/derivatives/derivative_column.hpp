@@ -184,16 +184,10 @@ class DerivativeColumn {
       flat_ = steps.empty();
       return steps;
     }
-    if (state_.metric.in_noise_units && options_.first_rungs < 3 && !restarted_) {
-      restarted_ = true;
-      const double moved = state_.top_move();
-      // Two rungs at a step that moves the data by one sigma do for a loose goal, unless the noise
-      // of the code is in the way there.
-      const bool quiet = e.noise * moved / 0.7 <= 0.5 * goal_;
-      if (e.all > 5.0 * goal_ && moved > 2.8 && quiet) {
-        const double step = state_.ladder_top() * 0.7 / moved;
-        return displacements(line_, {step, 0.5 * step});
-      }
+    if (state_.metric.in_noise_units && e.all > 5.0 * goal_) {
+      // Where steps are this far apart, going down rung by rung would not do.
+      const double step = quiet_step(e);
+      if (step < 0.5 * state_.ladder_bottom()) return displacements(line_, {step, 0.5 * step});
     }
     if (auto steps = inquiry_.kink_steps(state_, line_, goal_); !steps.empty()) return steps;
     if (inquiry_.settled() && state_.kinks.any()) ended_ = true;
@@ -205,9 +199,9 @@ class DerivativeColumn {
       if (!(moves_.jumped() || inquiry_.audited()) || state_.supported()) return {};
       return pair_of(line_, 0.5 * state_.ladder_bottom(), 0.25 * state_.ladder_bottom());
     }
-    // Differences of values that are rounded look like truncation.
-    const bool rounding = state_.plain_rounding() && e.noise >= 0.25 * e.truncation;
-    const bool noisy = e.noise > 0.5 * goal_ && (e.noise >= e.truncation || rounding) &&
+    const bool rounding = state_.rounding_only(e.noise, line_.fiducial());
+    // Differences that are all rounding make a truncation of up to twice the noise.
+    const bool noisy = e.noise > 0.5 * goal_ && e.noise >= (rounding ? 0.5 : 1.0) * e.truncation &&
                        (state_.confirmed(e.noise) || state_.least_noise() > e.all);
     const bool unconverged = !noisy && e.truncation > 0.3 * state_.scale();
     state_.has_unresolved = false;
@@ -216,11 +210,22 @@ class DerivativeColumn {
       ended_ = true;
       return {};
     }
-    if (noisy && !inquiry_.audited() && !state_.rounded(e.noise) && !state_.plain_rounding()) {
+    if (noisy && !rounding && !inquiry_.audited() && !state_.rounded(e.noise)) {
       return inquiry_.audit(state_, line_);
     }
     if (unconverged) return moves_.jump_down(state_, line_);
-    return noisy ? moves_.up(state_, line_, e, goal_) : moves_.down(state_, line_, e);
+    return noisy ? moves_.up(state_, line_, e, rounding) : moves_.down(state_, line_, e);
+  }
+
+  /// The step that moves the data by about a standard deviation; not so near that the noise of the
+  /// code would spoil the goal, as far as that noise is known.
+  [[nodiscard]] double quiet_step(const ColumnState::Totals& e) const {
+    constexpr double best_move = 0.7;   // where two rungs have the least error
+    constexpr double deviations = 3.0;  // of the rounding, as in the claim
+    const double top = state_.ladder_top();
+    const double noise =  // of a step of 1: it falls with the step
+        std::max(state_.confirmed(e.noise) ? e.noise * top : 0.0, deviations * state_.rounding());
+    return std::max(top * best_move / state_.top_move(), noise / (0.5 * goal_));
   }
 
   /// Has the error failed to fall for so many rounds?
@@ -248,7 +253,7 @@ class DerivativeColumn {
   std::array<int, 2> failures_{}, successes_{};  // below and above
   std::string words_;                            // of the last failure
 
-  bool probing_{false}, fresh_{false}, ended_{false}, restarted_{false}, flat_{false};
+  bool probing_{false}, fresh_{false}, ended_{false}, flat_{false};
   int shrinks_{0}, stalled_{0};
   double best_{infinity};
 };

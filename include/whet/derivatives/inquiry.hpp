@@ -51,10 +51,12 @@ class Inquiry {
     const Eigen::Index n = audit_.elements();
     Mask structure = Mask::Constant(n, false);
     bool open = false, any_structure = false;
+    const CrowdNoise crowd = crowd_noise(audit_, suspected_);
     for (Eigen::Index i = 0; i < n; ++i) {
       const double level = state.noise.level(i);
       if (suspected_.slope(i) > 0.0) {
-        const int verdict = settle_kink(audit_, i, level, suspected_, state.ladder_bottom());
+        const int verdict = settle_kink(audit_, i, level, crowd.at(audit_.origin(i)), suspected_,
+                                        state.ladder_bottom());
         if (verdict > 0) state.kinks.slope(i) = suspected_.slope(i);
         if (verdict < 0) cleared_(i) = true;
         open = open || verdict == 0;

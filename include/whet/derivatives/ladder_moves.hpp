@@ -51,7 +51,8 @@ class LadderMoves {
   [[nodiscard]] std::vector<double> down(const ColumnState& state, const Line& line,
                                          const ColumnState::Totals& e) {
     const double bottom = state.ladder_bottom();
-    if (const double step = gap(state, false); step > 0.0) return displacements(line, {step});
+    const double between = gap(state, false, false);
+    if (between > 0.0) return displacements(line, {between});
     const auto touching = [&](Eigen::Index i) {
       return state.estimate.bottom(i) <= 1.001 * bottom;
     };
@@ -59,19 +60,17 @@ class LadderMoves {
     return pair_of(line, 0.5 * bottom, 0.25 * bottom);
   }
 
-  /// Noise is the larger part: farther.
+  /// Noise is the larger part: farther. @param rounding  it is no more, and no structure
   [[nodiscard]] std::vector<double> up(const ColumnState& state, const Line& line,
-                                       const ColumnState::Totals& e, double goal) {
+                                       const ColumnState::Totals& e, bool rounding) {
     const double top = state.ladder_top();
-    if (const double step = gap(state, true); step > 0.0) return displacements(line, {step});
+    const double between = gap(state, true, rounding);
+    if (between > 0.0) return displacements(line, {between});
     const auto touching = [&](Eigen::Index i) { return state.estimate.top(i) >= top / 1.001; };
     if (balanced(state, touching, e)) return {};
     static constexpr std::array<double, 5> factors{2.0, 2.0, 4.0, 16.0, 256.0};
-    // Rounding is known to fall with the step: as far as the goal asks, but where there is a model.
-    const double factor = state.plain_rounding() ? std::clamp(4.0 * e.noise / goal, 2.0, 8.0)
-                          : e.noise > 20.0 * e.truncation
-                              ? factors[std::min(ups_++, factors.size() - 1)]
-                              : 2.0;
+    const double factor =
+        e.noise > 20.0 * e.truncation ? factors[std::min(ups_++, factors.size() - 1)] : 2.0;
     const double step = line.fitted(factor * top);
     if (step < 1.05 * top) return {};
     return factor > 2.0 ? displacements(line, {step, 0.5 * step}) : pair_of(line, step, 2.0 * step);
@@ -105,8 +104,8 @@ class LadderMoves {
   [[nodiscard]] bool jumped() const noexcept { return jumped_; }
 
  private:
-  /// A gap of the ladder beside the windows in use, filled at its middle; 0: none.
-  [[nodiscard]] static double gap(const ColumnState& state, bool above) {
+  /// A gap of the ladder beside the windows in use, or inside too, filled at its middle; 0: none.
+  [[nodiscard]] static double gap(const ColumnState& state, bool above, bool inside) {
     const std::vector<Rung>& rungs = state.ladder();
     const Estimate& e = state.estimate;
     const auto share = [&](Eigen::Index i) {
@@ -118,9 +117,11 @@ class LadderMoves {
       if (share(i) > share(worst)) worst = i;
     }
     const double edge = above ? e.top(worst) : e.bottom(worst);
+    // Rounding is that of the smallest step of a window, however far the window reaches.
+    const double low = 0.999 * (inside ? e.bottom(worst) : edge), high = 1.001 * edge;
     for (std::size_t r = 0; r + 1 < rungs.size(); ++r) {
       const double near = above ? rungs[r].step : rungs[r + 1].step;
-      if (std::abs(near - edge) < 1e-3 * edge && rungs[r + 1].step > 3.2 * rungs[r].step) {
+      if (near > low && near < high && rungs[r + 1].step > 3.2 * rungs[r].step) {
         return std::sqrt(rungs[r].step * rungs[r + 1].step);
       }
     }

@@ -136,13 +136,19 @@ struct NoiseDraw {
     }
   }
   if (n >= 8) {  // elements of one code are alike in their relative noise
-    std::vector<double> relative;
+    std::vector<std::pair<double, double>> relative;  // and the say: of values near 0 none
+    double say = 0.0;
     for (Eigen::Index i = 0; i < n; ++i) {
-      if (readings.origin(i) != 0.0) {
-        relative.push_back(noise.level(i) / std::abs(readings.origin(i)));
-      }
+      const double value = std::abs(readings.origin(i));
+      if (value > 0.0) relative.emplace_back(noise.level(i) / value, value), say += value;
     }
-    const double least = 0.7 * lower_median(std::move(relative));
+    std::sort(relative.begin(), relative.end());
+    double least = 0.0, heard = 0.0;
+    for (const auto& [level, value] : relative) {
+      least = 0.7 * level;
+      heard += value;
+      if (heard >= 0.5 * say) break;
+    }
     for (Eigen::Index i = 0; i < n; ++i) {
       noise.level(i) = std::max(noise.level(i), least * std::abs(readings.origin(i)));
     }

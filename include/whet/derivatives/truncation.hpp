@@ -78,6 +78,7 @@ class Truncation {
   /// Where slopes at growing steps stop to differ more, the steps are beyond what the function
   /// lets extrapolate (aliased, saturated, past a pole): small slopes there would look certain.
   void guard(int family) {
+    constexpr double doubt = 20.0;  // a level of few draws, the least of many elements, is low
     const std::vector<Rung>& rungs = windows_.rungs_of(family);
     const std::size_t count = rungs.size();
     for (std::size_t i = 0; i + 2 < count; ++i) {
@@ -86,7 +87,7 @@ class Truncation {
       const double near = distance(a, b), far = distance(b, c);
       const double expected =
           (windows_[c].gain - windows_[b].gain) / (windows_[b].gain - windows_[a].gain);
-      if (near <= std::min(20.0 * e_.noise(a), e_.change(a)) ||
+      if (near <= std::min(doubt * e_.noise(a), e_.change(a)) ||
           far >= std::pow(expected, 0.3) * near) {
         continue;
       }
