@@ -1,7 +1,6 @@
 #pragma once
 /// From derivatives to information: whitened rows with the sizes of their errors.
 
-#include <algorithm>
 #include <string>
 #include <utility>
 #include <vector>
@@ -56,17 +55,6 @@ namespace whet::detail {
                              .got = shift.data.size() != n ? text(shift.data.size()) + " elements"
                                                            : "an element that is not finite",
                              .expected = text(n) + " finite elements, one a datum"});
-    }
-    if (shift.name.empty()) {
-      fail<ObservableError>({.where = "expected_information",
-                             .what = "name of shift " + text(s),
-                             .got = "an empty one",
-                             .expected = "a name to ask for the bias by"});
-    }
-    if (std::find(parts.shifts.begin(), parts.shifts.end(), shift.name) != parts.shifts.end()) {
-      fail<ObservableError>({.where = "expected_information",
-                             .what = "shift " + in_quotes(shift.name) + " is given twice",
-                             .advice = "Add the two up, or give them two names."});
     }
     rows.col(count + s) = shift.data;
     parts.shifts.push_back(shift.name);

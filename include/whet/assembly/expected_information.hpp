@@ -117,6 +117,12 @@ inline void check(const Parameters& parameters, const InformationOptions& option
   }
   std::vector<std::string> names;
   for (const Shift& shift : options.shifts) {
+    if (shift.name.empty()) {
+      fail<ParameterError>({.where = "expected_information",
+                            .what = "name of shift " + text(names.size()),
+                            .got = "an empty one",
+                            .expected = "a name to ask for the bias by"});
+    }
     if (std::find(names.begin(), names.end(), shift.name) != names.end()) {
       fail<ParameterError>({.where = "expected_information",
                             .what = "shift " + in_quotes(shift.name) + " is given twice",
